@@ -1,0 +1,8 @@
+//! Somadawn: an agent-based, spatial model of germ-soma specialization in colonies of cells.
+//!
+//! The rooms, from the ground up (a room uses those below it only):
+//! [`theory`], [`tissue`], [`stats`], [`scenario`], [`world`], [`record`], [`evolution`],
+//! [`study`], [`report`], [`commands`].
+
+pub mod scenario;
+pub mod theory;

@@ -1,0 +1,5 @@
+//! The scenario: what the user writes, checked and complete.
+
+pub mod settings;
+
+pub use settings::Settings;

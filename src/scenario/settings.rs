@@ -1,0 +1,164 @@
+//! Checked settings: typed, complete and immutable; nothing below ever sees a raw number.
+
+use crate::theory::{Cue, CueSet, TaskReturn};
+
+/// Everything a scenario states, every default spelled out.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Settings {
+    /// What the scenario is about, in the user's words.
+    pub title: String,
+    /// Seed from which every random number of the scenario derives.
+    pub seed: u64,
+    /// Where colonies live.
+    pub habitat: Habitat,
+    /// The shape and size of an adult colony.
+    pub body: Body,
+    /// Founding, reproduction and death.
+    pub life: Life,
+    /// A cell's energy.
+    pub budget: Budget,
+    /// What the two tasks yield.
+    pub returns: Returns,
+    /// What is heritable and how it mutates.
+    pub traits: Traits,
+    /// How long and how often.
+    pub run: Run,
+    /// When differentiation counts as arisen.
+    pub onset: Onset,
+}
+
+/// The habitat: places that hold at most one colony each.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Habitat {
+    /// Number of places (N).
+    pub sites: usize,
+    /// How propagules spread over them.
+    pub layout: Layout,
+}
+
+/// How propagules spread over the habitat.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Layout {
+    /// A propagule lands on any site with equal probability.
+    Mixed,
+}
+
+/// The adult body.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Body {
+    /// How a daughter cell is placed.
+    pub plan: Plan,
+    /// Cells of an adult colony (n).
+    pub adult_cells: usize,
+    /// Nearest-neighbour distance of the lattice (d), um.
+    pub cell_diameter_um: f64,
+}
+
+/// Body plans that are built.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Plan {
+    /// Compact growth.
+    Clump,
+}
+
+/// The life cycle of a colony.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Life {
+    /// Cells of a propagule.
+    pub propagule_cells: usize,
+    /// Cost of a propagule (c_p), eu.
+    pub propagule_cost_eu: f64,
+    /// Hazard of an adult colony of unit viability (m0), 1/h.
+    pub adult_hazard_per_h: f64,
+    /// Hazard no viability lowers (m_ext), 1/h.
+    pub extrinsic_hazard_per_h: f64,
+    /// Hazard of a growing colony, 1/h.
+    pub juvenile_hazard_per_h: f64,
+}
+
+/// A cell's energy budget.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Budget {
+    /// Income of a fully fed cell (e0), eu/h.
+    pub income_eu_per_h: f64,
+    /// What a growing cell spends on itself, eu/h.
+    pub upkeep_eu_per_h: f64,
+    /// Reserve at which a growing cell divides, eu.
+    pub division_cost_eu: f64,
+    /// Coefficient of variation of that reserve between divisions.
+    pub division_cv: f64,
+}
+
+/// What the two tasks yield.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Returns {
+    /// Returns on the soma budget.
+    pub viability: TaskReturn,
+    /// Returns on the germ budget.
+    pub fecundity: TaskReturn,
+}
+
+/// Heritable traits and their mutation.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Traits {
+    /// Cues whose responsiveness can evolve.
+    pub cues: CueSet,
+    /// Where the baseline g0 starts.
+    pub baseline: Baseline,
+    /// Where each cue's responsiveness starts, in the order of [`Cue::ALL`].
+    pub start: [f64; Cue::COUNT],
+    /// Probability that a trait mutates, per trait and propagule.
+    pub mutation_probability: f64,
+    /// Standard deviation of a mutation's step.
+    pub mutation_sd: f64,
+    /// Bound of g0 and of every g_k: traits stay within +-bound.
+    pub bound: f64,
+    /// Share of a cell's income lost per unit of summed responsiveness.
+    pub cost_per_unit: f64,
+}
+
+/// Where the baseline starts.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Baseline {
+    /// At the generalist optimum of the scenario.
+    Optimum,
+    /// At this logit.
+    At(f64),
+}
+
+/// Length and repetition of a run.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Run {
+    /// Generations per replicate.
+    pub generations: u64,
+    /// Generations between censuses.
+    pub census_every: u64,
+    /// Replicates.
+    pub replicates: u32,
+    /// Whether a replicate ends once its onset is confirmed.
+    pub stop_after_onset: bool,
+    /// Hours over which settlement is batched.
+    pub tick: Tick,
+}
+
+/// How long settlement is batched.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Tick {
+    /// A 200th of the generalist's generation time.
+    Auto,
+    /// This many hours.
+    Hours(f64),
+}
+
+/// What counts as onset, and the classes of cells.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Onset {
+    /// Division index D at and above which a population counts as differentiated.
+    pub index: f64,
+    /// Censuses in a row for which D must stay so.
+    pub sustained_censuses: u32,
+    /// Soma share below which a cell is germ.
+    pub germ_below: f64,
+    /// Soma share above which a cell is soma.
+    pub soma_above: f64,
+}
