@@ -6,3 +6,5 @@
 
 pub mod scenario;
 pub mod theory;
+pub mod tissue;
+pub mod world;

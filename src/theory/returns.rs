@@ -37,4 +37,16 @@ impl TaskReturn {
     pub const fn effect(&self, exposed: bool) -> f64 {
         if exposed { self.surface_effect } else { self.interior_effect }
     }
+
+    /// The return at `x` >= 0 of a cell of that exposure: `effect * curve(x)`.
+    #[must_use]
+    pub fn value(&self, x: f64, exposed: bool) -> f64 {
+        self.effect(exposed) * self.curve.value(x)
+    }
+
+    /// Whether surface and interior cells differ in it.
+    #[must_use]
+    pub fn depends_on_exposure(&self) -> bool {
+        self.surface_effect.total_cmp(&self.interior_effect).is_ne()
+    }
 }
