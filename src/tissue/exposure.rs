@@ -26,11 +26,7 @@ impl ExposureMap {
         let certain = full.unwrap_or(0);
         let mut filled = vec![0_u8; lattice.grid_len()];
         for (rank, &place) in lattice.order().iter().enumerate() {
-            filled[place as usize] = if rank < certain {
-                2
-            } else {
-                u8::from(certain < cells)
-            };
+            filled[place as usize] = if rank < certain { 2 } else { u8::from(certain < cells) };
         }
         let mut verdicts = vec![Verdict::Surface; lattice.grid_len()];
         for &place in lattice.order() {

@@ -58,6 +58,8 @@ pub struct Growth {
     /// Sites by distance from the centre; within the shell being filled, in the order drawn.
     targets: Vec<u32>,
     shell: usize,
+    /// Cells of the body so far; entries of the following beyond it are leftovers.
+    held: usize,
     places: Vec<u32>,
     labels: Vec<i8>,
     reserves_eu: Vec<f32>,
@@ -77,10 +79,11 @@ impl Growth {
             propagule_cells,
             targets: lattice.order().to_vec(),
             shell: 0,
-            places: Vec::with_capacity(adult_cells),
-            labels: Vec::with_capacity(adult_cells),
-            reserves_eu: Vec::with_capacity(adult_cells),
-            divided_at_h: Vec::with_capacity(adult_cells),
+            held: 0,
+            places: vec![0; adult_cells],
+            labels: vec![0; adult_cells],
+            reserves_eu: vec![0.0; adult_cells],
+            divided_at_h: vec![0.0; adult_cells],
             mothers: Vec::with_capacity(adult_cells),
             lattice,
         }
@@ -105,16 +108,16 @@ impl Growth {
             self.divide_in_rounds(pace, until_h, rng)
         };
         Arrangement {
-            places: &self.places,
-            labels: &self.labels,
-            reserves_eu: &self.reserves_eu,
+            places: &self.places[..self.held],
+            labels: &self.labels[..self.held],
+            reserves_eu: &self.reserves_eu[..self.held],
             duration_h,
         }
     }
 
     /// Whether each cell of the body last grown to adult size is exposed, in the order of cells.
     pub fn exposed(&self) -> impl Iterator<Item = bool> {
-        self.places
+        self.places[..self.held]
             .iter()
             .map(|&place| self.exposure.exposed(&self.lattice, place, |p| self.crowd.occupied(p)))
     }
@@ -123,22 +126,20 @@ impl Growth {
         self.crowd.clear(&self.targets);
         self.targets.copy_from_slice(self.lattice.order());
         self.shell = 0;
-        self.places.clear();
-        self.labels.clear();
-        self.reserves_eu.clear();
+        self.held = self.propagule_cells;
+        self.labels[..self.held].fill(0);
+        self.reserves_eu.fill(0.0);
         for cell in 0..self.propagule_cells {
-            let target = self.draw_target(cell, upper_half(rng.next_u64()));
+            let (target, _) = self.draw_target(cell, upper_half(rng.next_u64()));
             self.crowd.put(target, cell as u32);
-            self.places.push(target);
-            self.labels.push(0);
-            self.reserves_eu.push(0.0);
+            self.places[cell] = target;
         }
     }
 
     fn divide_in_rounds(&mut self, pace: &Pace, until_h: f64, rng: &mut impl Rng) -> f64 {
         let interval_h = pace.division_interval_h();
         let mut now_h = 0.0;
-        while self.places.len() < self.adult_cells {
+        while self.held < self.adult_cells {
             if now_h + interval_h > until_h {
                 self.save(pace, until_h - now_h);
                 return until_h;
@@ -151,7 +152,7 @@ impl Growth {
 
     /// All cells divide at once, in random order; in the last round only as many as are needed.
     fn divide_a_round(&mut self, pace: &Pace, rng: &mut impl Rng) {
-        let before = self.places.len();
+        let before = self.held;
         let dividing = before.min(self.adult_cells - before);
         self.mothers.clear();
         self.mothers.extend(0..before as u32);
@@ -168,20 +169,19 @@ impl Growth {
 
     fn divide_one_by_one(&mut self, pace: &Pace, until_h: f64, rng: &mut impl Rng) -> f64 {
         let mut queue = BinaryHeap::with_capacity(self.adult_cells);
-        self.divided_at_h.clear();
-        self.divided_at_h.resize(self.adult_cells, 0.0);
-        for cell in 0..self.places.len() as u32 {
+        self.divided_at_h.fill(0.0);
+        for cell in 0..self.held as u32 {
             queue.push(Reverse(Division::drawn(cell, 0.0, pace, rng)));
         }
         let mut now_h = 0.0;
-        while self.places.len() < self.adult_cells {
+        while self.held < self.adult_cells {
             let Some(Reverse(next)) = queue.pop() else { break };
             if next.at_h > until_h {
                 now_h = until_h;
                 break;
             }
             now_h = next.at_h;
-            let daughter = self.places.len() as u32;
+            let daughter = self.held as u32;
             self.divide(next.mother, upper_half(rng.next_u64()));
             for cell in [next.mother, daughter] {
                 self.divided_at_h[cell as usize] = now_h;
@@ -196,26 +196,23 @@ impl Growth {
 
     /// Divides `mother`: the daughter goes in next to it, labels are set, reserves are spent.
     fn divide(&mut self, mother: u32, random: u32) {
-        let daughter = self.places.len();
-        let (choices, first) = self.open_shell(daughter);
-        let (pick, ties) = below(random, choices);
-        self.targets.swap(first, first + pick);
-        let target = self.targets[first];
-        self.places.push(target);
+        let daughter = self.held;
+        let (target, ties) = self.draw_target(daughter, random);
         let newcomer =
             Newcomer { cell: daughter as u32, mother: self.places[mother as usize], target, ties };
         self.crowd.push_in(&self.lattice, newcomer, &mut self.places);
         self.labels[mother as usize] = -1;
-        self.labels.push(1);
+        self.labels[daughter] = 1;
         self.reserves_eu[mother as usize] = 0.0;
-        self.reserves_eu.push(0.0);
+        self.held += 1;
     }
 
-    fn draw_target(&mut self, held: usize, random: u32) -> u32 {
+    /// A random vacant site of those nearest the centre, and random bits to spare.
+    fn draw_target(&mut self, held: usize, random: u32) -> (u32, u32) {
         let (choices, first) = self.open_shell(held);
-        let (pick, _) = below(random, choices);
+        let (pick, ties) = below(random, choices);
         self.targets.swap(first, first + pick);
-        self.targets[first]
+        (self.targets[first], ties)
     }
 
     /// How many sites of the nearest shell with room are vacant, and where they start.
@@ -228,7 +225,7 @@ impl Growth {
 
     /// Adds what every cell saves in `hours` without dividing.
     fn save(&mut self, pace: &Pace, hours: f64) {
-        for reserve in &mut self.reserves_eu {
+        for reserve in &mut self.reserves_eu[..self.held] {
             *reserve += (hours * pace.net_income_eu_per_h) as f32;
         }
     }

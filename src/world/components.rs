@@ -142,8 +142,9 @@ pub struct PropaguleStock {
 impl PropaguleStock {
     /// Propagules released within `hours` of adulthood.
     #[must_use]
-    pub fn released_within(&self, hours: f64) -> f64 {
-        (self.head_start + self.per_hour * hours).floor()
+    pub fn released_within(&self, hours: f64) -> u64 {
+        // A cast towards zero is a floor here, and several times as fast.
+        (self.head_start + self.per_hour * hours) as i64 as u64
     }
 }
 

@@ -4,8 +4,8 @@ use bevy_ecs::prelude::*;
 use rand_xoshiro::Xoshiro256PlusPlus;
 
 use super::components::{
-    CellBundle, ColonyBundle, DivisionLabel, Exposed, Lifespan, NoiseDraw, Output, Phase, Place,
-    SomaShare, Vitals,
+    Budget, CellBundle, ColonyBundle, DivisionLabel, Exposed, Lifespan, NoiseDraw, Output, Phase,
+    Place, SomaShare, Vitals,
 };
 use super::mechanisms::only_table;
 use super::resources::{
@@ -22,6 +22,7 @@ type CellQuery = QueryState<(
     &'static Exposed,
     &'static NoiseDraw,
     &'static SomaShare,
+    &'static Budget,
     &'static Output,
 )>;
 
@@ -53,6 +54,8 @@ pub struct ColonyView<'w> {
     pub noise: &'w [NoiseDraw],
     /// Each cell's soma share.
     pub shares: &'w [SomaShare],
+    /// How each cell splits its income.
+    pub budgets: &'w [Budget],
     /// What each cell yields.
     pub outputs: &'w [Output],
 }
@@ -147,7 +150,7 @@ impl Population {
     /// Adult colonies in site order.
     pub fn adults(&mut self) -> impl Iterator<Item = ColonyView<'_>> {
         let (phases, _, vitals) = only_table(self.colonies.contiguous_iter(&self.world));
-        let (places, labels, exposed, noise, shares, outputs) =
+        let (places, labels, exposed, noise, shares, budgets, outputs) =
             only_table(self.cells.contiguous_iter(&self.world));
         let pool = &self.world.resource::<GenePool>().0;
         let n = self.adult_cells;
@@ -163,6 +166,7 @@ impl Population {
                 exposed: &exposed[rows.clone()],
                 noise: &noise[rows.clone()],
                 shares: &shares[rows.clone()],
+                budgets: &budgets[rows.clone()],
                 outputs: &outputs[rows],
             }
         })

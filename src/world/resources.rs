@@ -171,7 +171,7 @@ pub struct Ledger {
     /// Colonies that died.
     pub deaths: u64,
     /// Propagules released over their whole life by colonies that died.
-    pub lifetime_propagules: f64,
+    pub lifetime_propagules: u64,
     /// Parents' ages at the settlements since the last census, h.
     pub parental_age_h: f64,
     /// Settlements since the last census.

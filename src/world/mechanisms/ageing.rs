@@ -6,9 +6,7 @@ use rand::RngExt;
 use super::only_table;
 use crate::world::components::{Lifespan, Phase, PropaguleStock, Vitals};
 use crate::world::draws::exponential;
-use crate::world::resources::{
-    Calendar, Clock, Event, Ledger, Maturing, Random, Rules, Vacancies,
-};
+use crate::world::resources::{Calendar, Clock, Event, Ledger, Maturing, Random, Rules, Vacancies};
 
 /// Draws the lifespan of every new adult and starts its stock.
 ///

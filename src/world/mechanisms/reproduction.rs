@@ -29,10 +29,12 @@ pub fn release_propagules(
 }
 
 fn released_between(life: &Lifespan, stock: &PropaguleStock, from_h: f64, to_h: f64) -> u32 {
-    let (from_h, to_h) = (from_h.max(life.adult_h), to_h.min(life.dies_h));
-    if to_h <= from_h {
+    // Dates of a colony that is not adult in this tick make both ends equal.
+    let ends = [from_h, to_h].map(|hour| hour.min(life.dies_h).max(life.adult_h) - life.adult_h);
+    // Nor does one that never matures release anything: its hours are not numbers.
+    if ends[1].total_cmp(&ends[0]).is_le() || ends[1].is_nan() {
         return 0;
     }
-    let already = if from_h > life.adult_h { stock.released_within(from_h - life.adult_h) } else { 0.0 };
-    (stock.released_within(to_h - life.adult_h) - already) as u32
+    let [before, after] = ends.map(|hours| stock.released_within(hours));
+    (after - before) as u32
 }
