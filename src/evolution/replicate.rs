@@ -20,6 +20,9 @@ pub struct Start {
     pub tick_h: f64,
 }
 
+/// Ticks between two looks at whether the run is to stop: a few milliseconds of common scenarios.
+const TICKS_BETWEEN_QUESTIONS: u32 = 256;
+
 /// A replicate under way.
 pub struct Replicate<'s> {
     settings: &'s Settings,
@@ -51,16 +54,20 @@ impl<'s> Replicate<'s> {
         }
     }
 
-    /// Runs to the next census and takes it; `None` when the replicate is over.
+    /// Runs to the next census and takes it; `None` when the replicate is over, or when `stopped`,
+    /// asked now and then, says so.
     ///
     /// The first census is taken as soon as there are adults.
-    pub fn advance(&mut self) -> Option<&CensusRow> {
+    pub fn advance(&mut self, stopped: impl Fn() -> bool) -> Option<&CensusRow> {
         if self.is_over() {
             return None;
         }
         let due = self.next_census_generation();
-        loop {
+        for ticks in 1_u32.. {
             self.population.tick();
+            if ticks.is_multiple_of(TICKS_BETWEEN_QUESTIONS) && stopped() {
+                return None;
+            }
             let first = self.censuses.is_empty() && self.population.adults().next().is_some();
             let reached = self.population.clock().generation >= due;
             if first || reached || self.population.alive() == 0 {

@@ -99,6 +99,16 @@ impl Calendar {
         self.deaths.push(Reverse(event));
     }
 
+    /// When the next event is due, h; none when nobody is alive.
+    #[must_use]
+    pub fn next_event_h(&self) -> Option<f64> {
+        let first = |queue: &BinaryHeap<Reverse<Event>>| queue.peek().map(|next| next.0.at_h);
+        match (first(&self.adulthoods), first(&self.deaths)) {
+            (Some(adulthood_h), Some(death_h)) => Some(adulthood_h.min(death_h)),
+            (adulthood_h, death_h) => adulthood_h.or(death_h),
+        }
+    }
+
     /// The next colony to be adult by `now_h`.
     pub fn next_adulthood(&mut self, now_h: f64) -> Option<Event> {
         pop_due(&mut self.adulthoods, now_h)
