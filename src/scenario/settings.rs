@@ -32,8 +32,8 @@ impl Settings {
     #[must_use]
     pub fn exposure_matters(&self) -> bool {
         self.traits.cues.contains(Cue::Exposure)
-            || self.returns.viability.depends_on_exposure()
-            || self.returns.fecundity.depends_on_exposure()
+            || self.returns.viability.depends_on_place()
+            || self.returns.fecundity.depends_on_place()
     }
 }
 

@@ -44,9 +44,9 @@ impl TaskReturn {
         self.effect(exposed) * self.curve.value(x)
     }
 
-    /// Whether surface and interior cells differ in it.
+    /// Whether surface and interior cells yield differently.
     #[must_use]
-    pub fn depends_on_exposure(&self) -> bool {
+    pub fn depends_on_place(&self) -> bool {
         self.surface_effect.total_cmp(&self.interior_effect).is_ne()
     }
 }
