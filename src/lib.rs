@@ -4,5 +4,7 @@
 //! [`theory`], [`tissue`], [`stats`], [`scenario`], [`world`], [`record`], [`evolution`],
 //! [`study`], [`report`], [`commands`].
 
+pub mod commands;
 pub mod scenario;
+pub mod study;
 pub mod theory;

@@ -257,6 +257,9 @@ impl FaultKind {
     }
 }
 
+/// Longest line around a fault that can be drawn, bytes.
+const LONGEST_DRAWN_LINE: usize = 300;
+
 /// A fault and the place where it was written, if it stands anywhere.
 #[derive(Debug, Clone)]
 pub struct Fault {
@@ -266,12 +269,28 @@ pub struct Fault {
 }
 
 impl Fault {
-    /// Name of the file or option and the line (from 1), if the fault stands anywhere.
+    /// Name of the file or option, the line and the column in bytes (both from 1), if the fault
+    /// stands anywhere.
     #[must_use]
-    pub fn line(&self) -> Option<(&str, usize)> {
+    pub fn place(&self) -> Option<(&str, usize, usize)> {
         let (source, span) = self.place.as_ref()?;
-        let before = source.inner().as_bytes().iter().take(span.start);
-        Some((source.name(), 1 + before.filter(|byte| **byte == b'\n').count()))
+        let before = &source.inner()[..span.start];
+        let line = before.matches('\n').count();
+        let column = before.len() - before.rfind('\n').map_or(0, |newline| newline + 1);
+        Some((source.name(), line + 1, column + 1))
+    }
+
+    /// Whether the lines around the fault can be shown: none is endless, and none holds control
+    /// characters that a terminal would obey.
+    #[must_use]
+    pub fn is_drawable(&self) -> bool {
+        let Some((source, span)) = self.place.as_ref() else { return true };
+        let text = source.inner();
+        let start = text[..span.start].rmatch_indices('\n').nth(1).map_or(0, |(at, _)| at + 1);
+        let end = text[span.end..].match_indices('\n').nth(1);
+        let end = end.map_or(text.len(), |(at, _)| span.end + at);
+        text[start..end].split('\n').all(|line| line.len() <= LONGEST_DRAWN_LINE)
+            && !text[start..end].chars().any(|c| c.is_control() && !"\n\r\t".contains(c))
     }
 }
 

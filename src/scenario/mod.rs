@@ -12,9 +12,13 @@ mod nearest;
 mod notes;
 mod overrides;
 mod read;
+pub mod reference;
 pub mod registry;
 mod relations;
+mod resolved;
+pub mod schema;
 pub mod settings;
+pub mod template;
 mod tree;
 mod unknown;
 

@@ -38,8 +38,11 @@ impl Notes {
     pub(crate) fn excerpt(&self, node: &Node) -> String {
         let Some(source) = self.sources.get(node.place.source) else { return String::new() };
         let text = &source.inner()[within(source.inner(), &node.place.span)];
-        let mut short: String =
-            text.chars().map(|c| if c.is_control() { ' ' } else { c }).take(LONGEST_EXCERPT).collect();
+        let mut short: String = text
+            .chars()
+            .map(|c| if c.is_control() { ' ' } else { c })
+            .take(LONGEST_EXCERPT)
+            .collect();
         if text.chars().nth(LONGEST_EXCERPT).is_some() {
             short.push_str("...");
         }

@@ -56,18 +56,17 @@ impl Override {
         if let Some(fault) = table_fault(&names.join("."), value) {
             return notes.at(&key, fault);
         }
-        match parse(value) {
+        let start = self.text.len() - value.trim_start().len();
+        match parse(value.trim()) {
             Ok(parsed) => {
-                let mut node =
-                    Frame { source, offset: path.len() + 1 }.node(&(0..0), &parsed);
+                let mut node = Frame { source, offset: start }.node(&(0..0), &parsed);
                 node.key = key;
                 insert(root, &names, node);
             }
             Err(error) => {
-                let start = path.len() + 1;
-                let span = error.span().map_or(start..self.text.len(), |span| {
-                    span.start + start..span.end + start
-                });
+                let end = self.text.len();
+                let span =
+                    error.span().map_or(start..end, |span| span.start + start..span.end + start);
                 let message = error.message().to_owned();
                 notes.at(&Origin { source, span }, FaultKind::Syntax { message });
             }
@@ -77,9 +76,9 @@ impl Override {
 
 /// The fault of an override that would replace a whole table.
 fn table_fault(path: &str, value: &str) -> Option<FaultKind> {
-    let inside = registry::entries().iter().find(|entry| {
-        entry.path().strip_prefix(path).is_some_and(|rest| rest.starts_with('.'))
-    })?;
+    let inside = registry::entries()
+        .iter()
+        .find(|entry| entry.path().strip_prefix(path).is_some_and(|rest| rest.starts_with('.')))?;
     Some(FaultKind::NotATable {
         key: path.to_owned(),
         value: value.chars().take(48).collect(),
@@ -90,11 +89,8 @@ fn table_fault(path: &str, value: &str) -> Option<FaultKind> {
 
 fn parse(value: &str) -> Result<Spanned<DeValue<'_>>, toml::de::Error> {
     DeValue::parse(value).or_else(|error| {
-        let word = value.trim();
-        let starts_like_a_word = word.chars().next().is_some_and(char::is_alphabetic);
-        let start = value.len() - value.trim_start().len();
-        if starts_like_a_word {
-            Ok(Spanned::new(start..start + word.len(), DeValue::String(word.into())))
+        if value.starts_with(char::is_alphabetic) {
+            Ok(Spanned::new(0..value.len(), DeValue::String(value.into())))
         } else {
             Err(error)
         }

@@ -62,13 +62,7 @@ fn orders(settings: &Settings, reader: &mut Reader<'_>) {
             p::INCOME.path,
             budget.income_eu_per_h,
         ),
-        order(
-            p::GERM_BELOW.path,
-            onset.germ_below,
-            "below",
-            p::SOMA_ABOVE.path,
-            onset.soma_above,
-        ),
+        order(p::GERM_BELOW.path, onset.germ_below, "below", p::SOMA_ABOVE.path, onset.soma_above),
         order(p::CENSUS_EVERY.path, censuses.0, "at most", p::GENERATIONS.path, censuses.1),
     ] {
         order.check(reader);
@@ -81,7 +75,8 @@ fn cells(settings: &Settings, reader: &mut Reader<'_>) {
     if cells <= u128::from(MOST_CELLS) || !reader.sound(&[p::SITES.path, p::ADULT_CELLS.path]) {
         return;
     }
-    let written = if reader.find(p::ADULT_CELLS.path).is_some() { &p::ADULT_CELLS } else { &p::SITES };
+    let written =
+        if reader.find(p::ADULT_CELLS.path).is_some() { &p::ADULT_CELLS } else { &p::SITES };
     reader.note(
         written.path,
         FaultKind::TooManyCells { sites, adult_cells, cells, limit: MOST_CELLS },
@@ -96,8 +91,13 @@ fn starts(settings: &Settings, reader: &mut Reader<'_>) {
         }
         let (other, limit) = (p::BOUND.path, traits.bound.to_string());
         let relation = "within plus or minus";
-        let kind =
-            FaultKind::Relation { key: key.clone(), value: value.to_string(), relation, other, limit };
+        let kind = FaultKind::Relation {
+            key: key.clone(),
+            value: value.to_string(),
+            relation,
+            other,
+            limit,
+        };
         reader.note(&key, kind);
     };
     if let Baseline::At(logit) = traits.baseline {
@@ -106,8 +106,13 @@ fn starts(settings: &Settings, reader: &mut Reader<'_>) {
     for cue in Cue::ALL {
         let key = format!("{}.{cue}", p::START.path);
         within(key.clone(), traits.start[cue.index()], reader);
-        let stated = reader.find(&key).is_some_and(|node| !matches!(node.content, Content::Table(_)));
-        if stated && p::CUES.domain.built.contains(&cue) && !traits.cues.contains(cue) && reader.sound(&[p::CUES.path]) {
+        let stated =
+            reader.find(&key).is_some_and(|node| !matches!(node.content, Content::Table(_)));
+        if stated
+            && p::CUES.domain.built.contains(&cue)
+            && !traits.cues.contains(cue)
+            && reader.sound(&[p::CUES.path])
+        {
             reader.note(&key.clone(), FaultKind::CueNotEnabled { key, cue: cue.to_string() });
         }
     }

@@ -34,9 +34,7 @@ fn note_in(table: &str, keys: &Keys, notes: &mut Notes) {
 
 /// The first key, relative to the table `path`, of that table.
 fn first_inside(path: &str) -> Option<&'static str> {
-    registry::entries()
-        .iter()
-        .find_map(|entry| entry.path().strip_prefix(path)?.strip_prefix('.'))
+    registry::entries().iter().find_map(|entry| entry.path().strip_prefix(path)?.strip_prefix('.'))
 }
 
 fn note_no_table(path: String, node: &Node, inside: &str, notes: &mut Notes) {

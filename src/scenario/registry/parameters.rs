@@ -340,7 +340,10 @@ pub(crate) static TABLES: &[Table] = &[
     Table { path: "habitat", meaning: "Where colonies live" },
     Table { path: "body", meaning: "The shape and size of an adult colony" },
     Table { path: "life", meaning: "Founding, reproduction and death of a colony" },
-    Table { path: "budget", meaning: "A cell's energy; 1 eu is what it earns in an hour by default" },
+    Table {
+        path: "budget",
+        meaning: "A cell's energy; 1 eu is what it earns in an hour by default",
+    },
     Table {
         path: "returns.viability",
         meaning: "What the soma budget yields: viability, which lowers the hazard",

@@ -27,7 +27,8 @@ impl PerCue {
         let full = format!("{key}.{name}");
         let names = || self.built.iter().map(|cue| cue.name());
         if self.later.contains(&name) {
-            let instead = format!("the cues are {} for now", names().collect::<Vec<_>>().join(", "));
+            let instead =
+                format!("the cues are {} for now", names().collect::<Vec<_>>().join(", "));
             return FaultKind::NotBuilt { what: full, instead };
         }
         let nearest = nearest(name, names()).map(|name| format!("{key}.{name}"));
@@ -75,11 +76,8 @@ impl Domain for PerCue {
     }
 
     fn schema(&self) -> serde_json::Value {
-        let properties: serde_json::Map<_, _> = self
-            .built
-            .iter()
-            .map(|cue| (cue.name().to_owned(), self.number.schema()))
-            .collect();
+        let properties: serde_json::Map<_, _> =
+            self.built.iter().map(|cue| (cue.name().to_owned(), self.number.schema())).collect();
         json!({ "type": "object", "properties": properties, "additionalProperties": false })
     }
 }

@@ -86,8 +86,7 @@ impl Domain for Points {
                 }
             }
         }
-        let sound =
-            points.len() == items.len() && Self::check_order(key, &points, items, notes);
+        let sound = points.len() == items.len() && Self::check_order(key, &points, items, notes);
         sound.then_some(points)
     }
 

@@ -24,13 +24,21 @@ pub(crate) struct TaskParameters {
     pub(crate) interior_effect: Parameter<Real>,
 }
 
-const fn only_for(words: &'static [&'static str]) -> Option<Condition> {
-    Some(Condition { sibling: "curve", words })
+const fn only_for(words: &'static [&'static str]) -> Condition {
+    Condition { sibling: "curve", words }
 }
 
 const fn effect(path: &'static str, meaning: &'static str) -> Parameter<Real> {
     let domain = Real::from_to(0.0, 1e6);
-    Parameter { path, unit: "none", meaning, domain, default: 1.0, required: false, condition: None }
+    Parameter {
+        path,
+        unit: "none",
+        meaning,
+        domain,
+        default: 1.0,
+        required: false,
+        condition: None,
+    }
 }
 
 macro_rules! task_parameters {
@@ -62,7 +70,7 @@ macro_rules! task_parameters {
                 domain: Real::above_to(0.0, 20.0),
                 default: 1.0,
                 required: false,
-                condition: only_for(&["power"]),
+                condition: Some(only_for(&["power"])),
             },
             half: Parameter {
                 path: concat!($table, ".half"),
@@ -71,7 +79,7 @@ macro_rules! task_parameters {
                 domain: Real::above_to(0.0, 1e6),
                 default: 0.5,
                 required: false,
-                condition: only_for(&["saturating", "sigmoid"]),
+                condition: Some(only_for(&["saturating", "sigmoid"])),
             },
             steepness: Parameter {
                 path: concat!($table, ".steepness"),
@@ -80,7 +88,7 @@ macro_rules! task_parameters {
                 domain: Real::above_to(0.0, 100.0),
                 default: 4.0,
                 required: false,
-                condition: only_for(&["sigmoid"]),
+                condition: Some(only_for(&["sigmoid"])),
             },
             points: Parameter {
                 path: concat!($table, ".points"),
@@ -90,7 +98,7 @@ macro_rules! task_parameters {
                 domain: Points { most: 1000 },
                 default: &[[0.0, 0.0], [1.0, 1.0]],
                 required: true,
-                condition: only_for(&["table"]),
+                condition: Some(only_for(&["table"])),
             },
             surface_effect: effect(
                 concat!($table, ".surface_effect"),
