@@ -174,6 +174,11 @@ fn files_that_are_no_scenario() {
     let desk = Desk::new();
     std::fs::create_dir(desk.path().join("pond.toml")).expect("the folder is writable");
     desk.refuses(&[], &["`pond.toml` is a folder, not a scenario file"]);
+    let below_a_file = Desk::with("title = \"Pond\"").run(&["check", "pond.toml/pond.toml"]);
+    assert_eq!(below_a_file.code, 2);
+    assert!(
+        below_a_file.err.contains("cannot read scenario file `pond.toml/pond.toml`\n  because: ")
+    );
     refuses("title = \"again\"", &["not valid TOML: duplicate key", "[pond.toml:2:"]);
 }
 
