@@ -4,7 +4,9 @@
 //! [`theory`], [`tissue`], [`stats`], [`scenario`], [`world`], [`record`], [`evolution`],
 //! [`study`], [`report`], [`commands`].
 
+pub mod commands;
 pub mod scenario;
+pub mod study;
 pub mod theory;
 pub mod tissue;
 pub mod world;

@@ -1,0 +1,3 @@
+//! What is asked of a scenario as a whole.
+
+pub mod outlook;
