@@ -4,6 +4,7 @@
 //! [`theory`], [`tissue`], [`stats`], [`scenario`], [`world`], [`record`], [`evolution`],
 //! [`study`], [`report`], [`commands`].
 
+pub mod record;
 pub mod scenario;
 pub mod stats;
 pub mod theory;

@@ -66,7 +66,9 @@ impl KaplanMeier {
         }
         let mut sorted = observations.to_vec();
         // A time of -0 is 0, though the total order tells them apart.
-        sorted.iter_mut().for_each(|observation| observation.time += 0.0);
+        for observation in &mut sorted {
+            observation.time += 0.0;
+        }
         sorted.sort_by(|a, b| a.time.total_cmp(&b.time));
         Ok(Self { steps: drops(&sorted) })
     }

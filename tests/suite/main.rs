@@ -1,5 +1,9 @@
 //! Checks of the library against values from outside it, one file per subject.
 
+mod record_folder;
+mod record_run;
+mod record_sample;
+mod record_summary;
 mod stats_binomial;
 mod stats_division_of_labour;
 mod stats_mean;

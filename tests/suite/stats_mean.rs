@@ -52,7 +52,7 @@ proptest! {
     ) {
         let found = MeanEstimate::of(&values, Level::P95).unwrap().unwrap();
         let interval = found.interval.unwrap();
-        prop_assert!(((interval.low + interval.high) / 2.0 - found.mean).abs() < 1e-9);
+        prop_assert!((interval.low.midpoint(interval.high) - found.mean).abs() < 1e-9);
         let moved: Vec<f64> = values.iter().map(|value| value + shift).collect();
         let moved = MeanEstimate::of(&moved, Level::P95).unwrap().unwrap();
         prop_assert!((moved.mean - found.mean - shift).abs() < 1e-9);
