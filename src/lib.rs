@@ -5,7 +5,9 @@
 //! [`study`], [`report`], [`commands`].
 
 pub mod commands;
+pub mod record;
 pub mod scenario;
+pub mod stats;
 pub mod study;
 pub mod theory;
 pub mod tissue;

@@ -3,7 +3,15 @@
 mod command_fixture;
 mod command_output;
 mod command_wrong_scenario;
+mod record_folder;
+mod record_run;
+mod record_sample;
+mod record_summary;
 mod scenario_overrides;
 mod scenario_properties;
 mod scenario_settings;
 mod scenario_templates;
+mod stats_binomial;
+mod stats_division_of_labour;
+mod stats_mean;
+mod stats_survival;
