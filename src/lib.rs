@@ -5,4 +5,5 @@
 //! [`study`], [`report`], [`commands`].
 
 pub mod scenario;
+pub mod study;
 pub mod theory;

@@ -1,0 +1,5 @@
+//! Whole studies of a scenario.
+
+pub mod prediction;
+
+pub use prediction::Prediction;
