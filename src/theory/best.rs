@@ -40,26 +40,27 @@ impl BestProgramme {
 impl Model {
     /// The best programme within the bounds: baseline, responsiveness of each enabled cue, and the
     /// noise cue's bias. A deterministic search: a coarse grid with all corners, climbs from the
-    /// best point of every pattern of signs, the highest of them refined. Between equals the
-    /// generalist stands. Where a mirror image does as well, noise has positive responsiveness.
+    /// best point of every pattern of signs, the highest of them refined; all that on a sketch of
+    /// the model, and the best of it once more on the model itself. Between equals the generalist
+    /// stands. Where a mirror image does as well, noise has positive responsiveness.
     #[must_use]
     pub fn best_programme(&self, generalist: &Generalist) -> BestProgramme {
         let space = TraitSpace::of(self);
-        let height = |traits: &[f64]| finite_or_lost(self.log_fitness(&space.programme(traits)));
         let bounds = &space.bounds;
-        let mut summits: Vec<Summit> = space
-            .starts(generalist.baseline, &height)
-            .into_iter()
-            .map(|start| climb(&height, bounds, &start.at, 0.08, 60))
-            .collect();
-        summits.sort_by(|a, b| b.value.total_cmp(&a.value));
-        summits.truncate(FINALISTS);
-        let refined = summits.into_iter().map(|summit| {
-            let summit = polish(&height, bounds, summit, 0.05, 100);
-            let summit = climb(&height, bounds, &summit.at, 0.01, 150);
-            polish(&height, bounds, summit, 1e-3, 150)
+        let height = |traits: &[f64]| finite_or_lost(self.log_fitness(&space.programme(traits)));
+        let sketch = self.sketch();
+        let sketched =
+            |traits: &[f64]| finite_or_lost(sketch.log_fitness(&space.programme(traits)));
+        let finalists = finalists(&space, &sketched, generalist.baseline);
+        let measured = finalists.into_iter().map(|summit| {
+            let value = height(&summit.at);
+            Summit { value, ..summit }
         });
-        let top = refined.max_by(|a, b| a.value.total_cmp(&b.value));
+        let top = measured.max_by(|a, b| a.value.total_cmp(&b.value)).map(|summit| {
+            let summit = polish(&height, bounds, summit, 0.01, 20);
+            let summit = climb(&height, bounds, &summit.at, 0.002, 80);
+            polish(&height, bounds, summit, 5e-4, 60)
+        });
         let bar = finite_or_lost(libm::log(generalist.r0)) + ROUNDING;
         let programme = match top {
             Some(top) if top.value > bar => space.programme(&top.at),
@@ -71,6 +72,22 @@ impl Model {
             outcome: self.outcome(&programme),
         }
     }
+}
+
+/// Summits of different ground, the highest first.
+fn finalists(space: &TraitSpace, height: &impl Fn(&[f64]) -> f64, baseline: f64) -> Vec<Summit> {
+    let bounds = &space.bounds;
+    let starts = space.starts(baseline, height).into_iter();
+    let mut summits: Vec<Summit> =
+        starts.map(|start| climb(height, bounds, &start.at, 0.08, 60)).collect();
+    summits.sort_by(|a, b| b.value.total_cmp(&a.value));
+    summits.truncate(FINALISTS);
+    let refined = summits.into_iter().map(|summit| {
+        let summit = polish(height, bounds, summit, 0.05, 100);
+        let summit = climb(height, bounds, &summit.at, 0.01, 150);
+        polish(height, bounds, summit, 1e-3, 150)
+    });
+    refined.collect()
 }
 
 /// The traits that the search varies, as coordinates: baseline, responsivenesses, noise bias.

@@ -114,7 +114,17 @@ pub fn joined(compositions: impl IntoIterator<Item = (f64, Composition)>) -> Com
     joined
 }
 
+/// The body with the mean numbers of cells of each kind.
+pub(super) fn average(compositions: &[(f64, Composition)]) -> Composition {
+    let cells = compositions.iter().flat_map(|(weight, body)| {
+        body.classes.iter().map(move |(kind, count)| (*kind, weight * count))
+    });
+    let endless = compositions.iter().all(|(_, body)| body.endless);
+    Composition { endless, ..Composition::of(cells) }
+}
+
 #[cfg(test)]
+#[expect(clippy::float_cmp, reason = "values that are exact by construction")]
 mod tests {
     use super::*;
 

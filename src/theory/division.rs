@@ -26,15 +26,17 @@ fn index_of(cells: impl Iterator<Item = (f64, f64)> + Clone) -> f64 {
         cells.clone().fold((0.0, 0.0), |(n, sum), (z, weight)| (n + weight, sum + weight * z));
     let mean = total / count;
     let greatest = mean * (1.0 - mean);
-    // Also false where the mean is not a number.
-    if !(greatest > 0.0) {
-        return 0.0;
+    if greatest > 0.0 {
+        let squares: f64 = cells.map(|(z, weight)| weight * (z - mean) * (z - mean)).sum();
+        (squares / count / greatest).clamp(0.0, 1.0)
+    } else {
+        // All germ, all soma, or no cells (then the mean is not a number).
+        0.0
     }
-    let squares: f64 = cells.map(|(z, weight)| weight * (z - mean) * (z - mean)).sum();
-    (squares / count / greatest).clamp(0.0, 1.0)
 }
 
 #[cfg(test)]
+#[expect(clippy::float_cmp, reason = "values that are exact by construction")]
 mod tests {
     use approx::assert_relative_eq;
 

@@ -1,18 +1,31 @@
 //! Fitness: the expected number of propagules that a founder leaves.
 //!
-//! `R0 = P(reach adulthood) E[ F / (c_p m) ]`, with F = e0 sum_i b_i the growth rate of the
-//! propagule stock and m = m_ext + m0 / V the adult hazard (Mylius & Diekmann 1995, Oikos 74:218).
-//! Support is pooled: V = mean_i v_i.
+//! `R0 = P(reach adulthood) E[ F / (c_p m) ]`, with `F = e0 sum_i b_i` the growth rate of the
+//! propagule stock and `m = m_ext + m0 / V` the adult hazard (Mylius & Diekmann 1995, Oikos
+//! 74:218). Support is pooled: `V = mean_i v_i`.
 
-use super::body::{CellKind, Composition, Compositions, joined};
+use super::body::{CellKind, Composition, Compositions, average, joined};
 use super::jet::Scalar;
 use super::life_history::LifeHistory;
 use super::quadrature::{Rule, for_each_combination};
 use super::reaction_norm::{Cue, CueSet, NOISE_BIAS_BOUND, Programme};
 use super::returns::TaskReturn;
 
-/// Bodies of which every combination of random fates is summed, at most; beyond it, Gauss rules.
-const ENUMERATED: f64 = 4096.0;
+/// How finely the luck of a body's cells is summed.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct Fineness {
+    /// Combinations of counts that are summed one by one, at most; beyond it, Gauss rules.
+    enumerated: f64,
+    /// Nodes of the Gauss rule of each class, for bodies of 1, 2, 3, and more classes.
+    nodes: [usize; 4],
+}
+
+/// R0 to about 1e-9 or better, and exactly where combinations are few.
+const FINE: Fineness = Fineness { enumerated: 4096.0, nodes: [24, 24, 10, 6] };
+/// R0 to a per mille or so, for finding one's way.
+const COARSE: Fineness = Fineness { enumerated: 65.0, nodes: [12, 6, 4, 3] };
+/// Bodies that a sketch keeps as they are, at most.
+const SKETCHED: usize = 3;
 
 /// All that theory needs of a scenario.
 #[derive(Debug, Clone, PartialEq)]
@@ -26,6 +39,7 @@ pub struct Model {
     pub(super) germ_below: f64,
     pub(super) soma_above: f64,
     bodies: Compositions,
+    fineness: Fineness,
 }
 
 impl Model {
@@ -55,10 +69,11 @@ impl Model {
             germ_below: 0.1,
             soma_above: 0.9,
             bodies,
+            fineness: FINE,
         }
     }
 
-    /// The same with g0 and every g_k within +-`bound`, the noise cue's bias within its own.
+    /// The same with `g0` and every `g_k` within +-`bound`, the noise cue's bias within its own.
     #[must_use]
     pub const fn with_bounds(mut self, bound: f64, noise_bias_bound: f64) -> Self {
         (self.bound, self.noise_bias_bound) = (bound, noise_bias_bound);
@@ -70,6 +85,16 @@ impl Model {
     pub const fn with_cell_classes(mut self, germ_below: f64, soma_above: f64) -> Self {
         (self.germ_below, self.soma_above) = (germ_below, soma_above);
         self
+    }
+
+    /// A rougher model, quicker to evaluate: luck summed coarsely, many bodies made one average
+    /// body.
+    pub(super) fn sketch(&self) -> Self {
+        let mut sketch = Self { fineness: COARSE, ..self.clone() };
+        if sketch.bodies.len() > SKETCHED {
+            sketch.bodies = vec![(1.0, average(&self.bodies))];
+        }
+        sketch
     }
 
     /// Rates and costs of a colony's life.
@@ -137,7 +162,7 @@ impl Model {
     fn output_over_draws<S: Scalar>(&self, fates: &[Fate<S>], p: f64, cells: f64) -> S {
         let counts: Vec<f64> = fates.iter().map(|fate| fate.count).collect();
         let mut output = S::constant(0.0);
-        for_each_combination(&noise_rules(&counts, p), |plus, weight| {
+        for_each_combination(&self.noise_rules(&counts, p), |plus, weight| {
             let body = fates.iter().zip(plus);
             let nothing = Returns { v: S::constant(0.0), b: S::constant(0.0) };
             let sums = body.fold(nothing, |sums, (fate, plus)| Returns {
@@ -147,6 +172,25 @@ impl Model {
             output = output + self.lifetime_output(sums.v * cells.recip(), sums.b) * weight;
         });
         output
+    }
+
+    /// Rules for the numbers of cells of each class whose noise cue reads +1: every value where
+    /// the combinations are few, Gauss rules otherwise.
+    pub(super) fn noise_rules(&self, counts: &[f64], p: f64) -> Vec<Rule> {
+        let Fineness { enumerated, nodes } = self.fineness;
+        let combinations: f64 = counts.iter().map(|count| count + 1.0).product();
+        let whole = counts.iter().all(|count| count.fract() == 0.0);
+        let size = nodes[counts.len().clamp(1, nodes.len()) - 1];
+        let rule = |count: &f64| {
+            // Counts are positive and far below 2^53: the casts are exact for whole counts.
+            #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss)]
+            if whole && (combinations <= enumerated || *count < size as f64) {
+                Rule::binomial(*count as u64, p)
+            } else {
+                Rule::gauss_binomial(*count, p, size.min(*count as usize + 1))
+            }
+        };
+        counts.iter().map(rule).collect()
     }
 
     /// `B V / (m_ext V + m0)`, which is 0 where V is 0.
@@ -178,28 +222,6 @@ impl Model {
         };
         body.classes().iter().map(fate).collect()
     }
-}
-
-/// Rules for the numbers of cells of each class whose noise cue reads +1: every value where the
-/// combinations are few, Gauss rules otherwise.
-pub(super) fn noise_rules(counts: &[f64], p: f64) -> Vec<Rule> {
-    let combinations: f64 = counts.iter().map(|count| count + 1.0).product();
-    let whole = counts.iter().all(|count| count.fract() == 0.0);
-    let size = match counts.len() {
-        0..=2 => 24,
-        3 => 10,
-        _ => 6,
-    };
-    let rule = |count: &f64| {
-        // Counts are positive and far below 2^53: the casts are exact for whole counts.
-        #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss)]
-        if whole && (combinations <= ENUMERATED || *count < size as f64) {
-            Rule::binomial(*count as u64, p)
-        } else {
-            Rule::gauss_binomial(*count, p, size.min(*count as usize + 1))
-        }
-    };
-    counts.iter().map(rule).collect()
 }
 
 /// Means of the positional cues over a body, which centre them.

@@ -183,15 +183,19 @@ impl Mul<f64> for Jet {
     }
 }
 
+// a / b is a times the reciprocal of b.
+#[expect(clippy::suspicious_arithmetic_impl)]
 impl Div for Jet {
     type Output = Self;
     fn div(self, other: Self) -> Self {
-        let inverse = other.lift(f64::recip, |x| {
-            let r = x.recip();
-            Jet { value: r, slope: -r * r, curvature: 2.0 * r * r * r }
-        });
-        self * inverse
+        self * other.lift(f64::recip, reciprocal)
     }
+}
+
+/// The jet of 1/x by x.
+fn reciprocal(x: f64) -> Jet {
+    let r = x.recip();
+    Jet { value: r, slope: -r * r, curvature: 2.0 * r * r * r }
 }
 
 #[cfg(test)]

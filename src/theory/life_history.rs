@@ -10,11 +10,11 @@ pub struct LifeHistory {
     pub propagule_cells: u64,
     /// Cells of an adult colony (n), at least `propagule_cells`.
     pub adult_cells: u64,
-    /// Cost of a propagule (c_p), eu.
+    /// Cost of a propagule (`c_p`), eu.
     pub propagule_cost_eu: f64,
     /// Hazard of an adult colony of unit viability (m0), 1/h.
     pub adult_hazard_per_h: f64,
-    /// Hazard no viability lowers (m_ext), 1/h.
+    /// Hazard no viability lowers (`m_ext`), 1/h.
     pub extrinsic_hazard_per_h: f64,
     /// Hazard of a growing colony, 1/h.
     pub juvenile_hazard_per_h: f64,
@@ -65,6 +65,7 @@ impl LifeHistory {
 }
 
 #[cfg(test)]
+#[expect(clippy::float_cmp, reason = "values that are exact by construction")]
 mod tests {
     use approx::assert_relative_eq;
 

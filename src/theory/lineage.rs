@@ -45,6 +45,7 @@ pub fn label_compositions(adult_cells: u64, propagule_cells: u64) -> Composition
 }
 
 #[cfg(test)]
+#[expect(clippy::float_cmp, reason = "values that are exact by construction")]
 mod tests {
     use approx::assert_relative_eq;
 

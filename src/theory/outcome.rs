@@ -3,7 +3,7 @@
 use super::body::Composition;
 use super::classes::BodyClass;
 use super::division::division_index_of_classes;
-use super::fitness::{Centre, Model, Norm, noise_rules};
+use super::fitness::{Centre, Model, Norm};
 use super::quadrature::for_each_combination;
 use super::reaction_norm::{Programme, sigmoid};
 
@@ -60,7 +60,7 @@ impl Model {
         if norm.is_deterministic() || body.is_endless() {
             count_body(&counts.iter().map(|count| count * p).collect::<Vec<_>>(), 1.0);
         } else {
-            for_each_combination(&noise_rules(&counts, p), count_body);
+            for_each_combination(&self.noise_rules(&counts, p), count_body);
         }
     }
 

@@ -47,7 +47,9 @@ impl Rule {
         loop {
             weight /= ratio(k - 1.0);
             k -= 1.0;
-            if k < 0.0 || !(weight > NEGLIGIBLE) {
+            // Below the support the inverse ratio is negative, infinite or not a number.
+            let within = k >= 0.0 && weight > NEGLIGIBLE && weight.is_finite();
+            if !within {
                 break;
             }
             below.push((k, weight));
@@ -76,7 +78,7 @@ impl Rule {
             let centre = p * (trials - k) + (1.0 - p) * k;
             (centre, k * p * (1.0 - p) * (trials - k + 1.0))
         });
-        gauss(recurrence.collect())
+        gauss(&recurrence.collect::<Vec<_>>())
     }
 
     /// Gauss rule of `size` nodes with the same first `2 size` moments as this rule (Stieltjes
@@ -105,14 +107,14 @@ impl Rule {
             before = std::mem::replace(&mut current, next);
             norm_before = norm;
         }
-        gauss(recurrence)
+        gauss(&recurrence)
     }
 }
 
 /// Nodes and weights from the recurrence `p_{k+1} = (x - a_k) p_k - b_k p_{k-1}` of monic
 /// orthogonal polynomials: eigenvalues of the Jacobi matrix, squared first components of its
-/// eigenvectors. Pairs are `(a_k, b_k)`, b_0 not used.
-fn gauss(recurrence: Vec<(f64, f64)>) -> Rule {
+/// eigenvectors. Pairs are `(a_k, b_k)`, `b_0` not used.
+fn gauss(recurrence: &[(f64, f64)]) -> Rule {
     let size = recurrence.len();
     let mut diagonal: Vec<f64> = recurrence.iter().map(|(a, _)| *a).collect();
     let mut off: Vec<f64> = recurrence.iter().skip(1).map(|(_, b)| b.max(0.0).sqrt()).collect();

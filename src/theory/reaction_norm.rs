@@ -99,7 +99,7 @@ pub const NOISE_BIAS_BOUND: f64 = 4.0;
 pub struct Programme {
     /// Baseline g0: logit of the soma share of a cell whose cues are all at their mean.
     pub baseline: f64,
-    /// Responsiveness g_k per cue, in the order of [`Cue::ALL`]; 0 for a cue not in use.
+    /// Responsiveness `g_k` per cue, in the order of [`Cue::ALL`]; 0 for a cue not in use.
     pub responsiveness: [f64; Cue::COUNT],
     /// Logit of the probability that the noise cue reads +1.
     pub noise_bias: f64,

@@ -149,10 +149,12 @@ fn positive(parameter: &'static str, value: f64) -> Result<f64, CurveError> {
 }
 
 fn power_jet(x: f64, a: f64) -> Jet {
+    let bend = a * (a - 1.0);
     Jet {
         value: libm::pow(x, a),
         slope: a * monomial(x, a - 1.0),
-        curvature: if a == 1.0 { 0.0 } else { a * (a - 1.0) * monomial(x, a - 2.0) },
+        // A straight line has no bend at x = 0 either, where the power is infinite.
+        curvature: if bend == 0.0 { 0.0 } else { bend * monomial(x, a - 2.0) },
     }
 }
 
@@ -171,7 +173,7 @@ fn hill_jet(x: f64, half: f64, steepness: f64) -> Jet {
     if x == 0.0 || ratio.is_infinite() {
         // H ~ (x/K)^n to leading order; the next term, -(x/K)^2n, counts at n = 1 only.
         let lead = power_jet(x / half, steepness);
-        let next = if steepness == 1.0 { 2.0 } else { 0.0 };
+        let next = if steepness - 1.0 == 0.0 { 2.0 } else { 0.0 };
         return Jet {
             value: lead.value,
             slope: lead.slope / half,

@@ -48,12 +48,11 @@ pub(super) fn climb(
             let bar = if outside { reflected.value } else { simplex[worst].value };
             (contracted.value > bar).then_some(contracted)
         };
-        match better {
-            Some(summit) => simplex[worst] = summit,
-            None => {
-                shrink(height, bounds, &mut simplex);
-                left = left.saturating_sub(worst);
-            }
+        if let Some(summit) = better {
+            simplex[worst] = summit;
+        } else {
+            shrink(height, bounds, &mut simplex);
+            left = left.saturating_sub(worst);
         }
     }
     simplex.sort_by(|a, b| b.value.total_cmp(&a.value));
@@ -61,12 +60,14 @@ pub(super) fn climb(
 }
 
 /// Refines a summit: tries each coordinate at its bounds, then steps along the axes, halving the
-/// step from `scale` times the bounds' width down to 1e-9 of it.
+/// step from `scale` times the bounds' width down to 1e-9 of it. Ends after `patience` evaluations
+/// per coordinate at the latest (on a bent ridge steps along axes only creep).
 pub(super) fn polish(
     height: &impl Height,
     bounds: &Bounds,
     mut best: Summit,
     scale: f64,
+    patience: usize,
 ) -> Summit {
     for (axis, (lower, upper)) in bounds.iter().enumerate() {
         for edge in [*lower, *upper] {

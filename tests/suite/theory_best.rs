@@ -1,5 +1,8 @@
 //! The best programme against mixtures found elsewhere and against brute force.
 
+#![expect(clippy::float_cmp, reason = "values that are exact by construction")]
+#![expect(clippy::cast_possible_truncation, reason = "small whole numbers")]
+
 use approx::assert_relative_eq;
 use somadawn::theory::lineage::label_compositions;
 use somadawn::theory::{

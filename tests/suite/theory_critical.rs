@@ -1,5 +1,7 @@
 //! Critical exponents, found through the whole theory, against closed forms.
 
+#![expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "small whole numbers")]
+
 use std::convert::Infallible;
 
 use somadawn::theory::critical::{global_critical, local_critical};

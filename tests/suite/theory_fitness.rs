@@ -1,5 +1,7 @@
 //! R0 against brute force: every draw of every cell's fate, every subset of mothers.
 
+#![expect(clippy::float_cmp, reason = "values that are exact by construction")]
+
 use approx::assert_relative_eq;
 use somadawn::theory::lineage::label_compositions;
 use somadawn::theory::reaction_norm::sigmoid;
@@ -47,13 +49,13 @@ fn by_every_draw(
     life: &LifeHistory,
     tasks: &[TaskReturn; 2],
     cells: &[(i8, bool)],
-    p: &Programme,
+    programme: &Programme,
 ) -> f64 {
     let n = cells.len();
-    let luck = sigmoid(p.noise_bias);
+    let luck = sigmoid(programme.noise_bias);
     let mean_label = cells.iter().map(|c| f64::from(c.0)).sum::<f64>() / n as f64;
     let mean_exposed = cells.iter().filter(|c| c.1).count() as f64 / n as f64;
-    let income = 1.0 - life.cost_per_unit * p.total_responsiveness();
+    let income = 1.0 - life.cost_per_unit * programme.total_responsiveness();
     let mut expected = 0.0;
     for draw in 0..1_u32 << n {
         let (mut v, mut b, mut probability) = (0.0, 0.0, 1.0);
@@ -62,7 +64,7 @@ fn by_every_draw(
             probability *= if plus { luck } else { 1.0 - luck };
             let noise = if plus { 1.0 } else { -1.0 } - (2.0 * luck - 1.0);
             let exposure = f64::from(u8::from(exposed)) - mean_exposed;
-            let z = p.soma_share(&[noise, f64::from(label) - mean_label, exposure, 0.0]);
+            let z = programme.soma_share(&[noise, f64::from(label) - mean_label, exposure, 0.0]);
             v += tasks[0].effect(exposed) * tasks[0].curve.value(income * z) / n as f64;
             b += tasks[1].effect(exposed) * tasks[1].curve.value(income * (1.0 - z));
         }
@@ -159,11 +161,11 @@ fn r0_of_random_fates_is_the_covariance_identity() {
     let (n, a, c) = (5, 1.4, 2.2);
     let programme =
         Programme { baseline: 0.4, responsiveness: [2.0, 0.0, 0.0, 0.0], noise_bias: 0.7 };
-    let p = programme.noise_probability();
-    let share = |noise: f64| programme.soma_share(&[noise - (2.0 * p - 1.0), 0.0, 0.0, 0.0]);
-    let mean = |f: &dyn Fn(f64) -> f64| p * f(share(1.0)) + (1.0 - p) * f(share(-1.0));
-    let (v, b) = (|z: f64| z.powf(a), |z: f64| (1.0 - z).powf(c));
-    let exact = mean(&|z| v(z) * b(z)) / 5.0 + 0.8 * mean(&v) * mean(&b);
+    let luck = programme.noise_probability();
+    let share = |noise: f64| programme.soma_share(&[noise - (2.0 * luck - 1.0), 0.0, 0.0, 0.0]);
+    let mean = |of: &dyn Fn(f64) -> f64| luck * of(share(1.0)) + (1.0 - luck) * of(share(-1.0));
+    let (work, births) = (|z: f64| z.powf(a), |z: f64| (1.0 - z).powf(c));
+    let exact = mean(&|z| work(z) * births(z)) / 5.0 + 0.8 * mean(&work) * mean(&births);
     let found = random_fates(a, c, Some(n)).expected_propagules(&programme) / n as f64;
     assert_relative_eq!(found, exact, max_relative = 1e-14);
 }

@@ -1,5 +1,7 @@
 //! The generalist optimum and selection at it, against closed forms.
 
+#![expect(clippy::float_cmp, reason = "values that are exact by construction")]
+
 use approx::assert_relative_eq;
 use somadawn::theory::lineage::label_compositions;
 use somadawn::theory::{
@@ -38,6 +40,9 @@ fn curvature_of_random_fates_is_the_closed_form() {
             let exact = closed_forms::dispersion_gain(a, c, n) * (z * (1.0 - z)).powi(2);
             assert!((noise.curvature - exact).abs() < 1e-11, "{n:?} {a} {c}");
             assert_eq!(noise.gradient, 0.0);
+            if exact.abs() < 1e-9 {
+                continue; // on the threshold itself rounding decides
+            }
             let expected = if closed_forms::dispersion_is_favoured(a, c, n) {
                 Verdict::FavouredByDisruption
             } else {

@@ -130,6 +130,5 @@ fn a_prediction_is_quick() {
     let at = |value: f64| Ok::<_, Infallible>(settings(value, value, &[Cue::Noise]));
     let Ok(_) = predict_with_critical(&scenario, &query, at);
     let critical = start.elapsed().checked_sub(plain).expect("later");
-    println!("predict {plain:?}, with critical values {critical:?}");
     assert!(plain.as_millis() < 500 && critical.as_millis() < 6000, "{plain:?} {critical:?}");
 }

@@ -2,6 +2,9 @@
 //! over mixtures, `dol_random_fates.csv` by brute force over two-point distributions), and against
 //! each other.
 
+#![expect(clippy::float_cmp, reason = "values that are exact by construction")]
+#![expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "small whole numbers")]
+
 use approx::assert_relative_eq;
 
 use super::*;
@@ -95,9 +98,8 @@ fn the_gain_of_dispersion_is_its_second_order_term() {
     let (a, c, step) = (1.6, 1.3, 1e-4);
     let z = generalist_optimum(a, c);
     let mean = |f: &dyn Fn(f64) -> f64| f64::midpoint(f(z - step), f(z + step));
-    let (v, b) = (|z: f64| z.powf(a), |z: f64| (1.0 - z).powf(c));
-    let n = 5.0;
-    let fitness = mean(&|z| v(z) * b(z)) / n + (1.0 - 1.0 / n) * mean(&v) * mean(&b);
+    let (work, births) = (|z: f64| z.powf(a), |z: f64| (1.0 - z).powf(c));
+    let fitness = mean(&|z| work(z) * births(z)) / 5.0 + 0.8 * mean(&work) * mean(&births);
     let gain = (fitness / generalist_fitness(a, c) - 1.0) * 2.0 / (step * step);
     assert_relative_eq!(gain, dispersion_gain(a, c, Some(5)), max_relative = 1e-5);
 }
