@@ -7,3 +7,5 @@
 pub mod scenario;
 pub mod study;
 pub mod theory;
+pub mod tissue;
+pub mod world;

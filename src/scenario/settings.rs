@@ -27,6 +27,16 @@ pub struct Settings {
     pub onset: Onset,
 }
 
+impl Settings {
+    /// Whether a cell's exposure makes any difference to what it does.
+    #[must_use]
+    pub fn exposure_matters(&self) -> bool {
+        self.traits.cues.contains(Cue::Exposure)
+            || self.returns.viability.depends_on_place()
+            || self.returns.fecundity.depends_on_place()
+    }
+}
+
 /// The habitat: places that hold at most one colony each.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Habitat {

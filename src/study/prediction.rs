@@ -160,17 +160,10 @@ pub fn model(settings: &Settings) -> Model {
 /// SEAM: labels are exact, but every cell is taken to lie at the surface, which is right for
 /// bodies of up to 12 cells only. For larger ones sample bodies with joint counts of label and
 /// exposure here. It matters where the exposure cue is on or a task has unequal surface and
-/// interior effects ([`exposure_matters`]).
+/// interior effects ([`Settings::exposure_matters`]).
 #[must_use]
 pub fn compositions(settings: &Settings) -> Compositions {
     label_compositions(settings.body.adult_cells as u64, settings.life.propagule_cells as u64)
-}
-
-/// Whether a cell's exposure makes a difference in a scenario.
-#[must_use]
-pub fn exposure_matters(settings: &Settings) -> bool {
-    let tasks = [&settings.returns.viability, &settings.returns.fecundity];
-    settings.traits.cues.contains(Cue::Exposure) || tasks.iter().any(|task| task.depends_on_place())
 }
 
 fn generalist_part(generalist: &Generalist) -> GeneralistPart {

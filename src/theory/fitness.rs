@@ -182,8 +182,7 @@ impl Model {
         let whole = counts.iter().all(|count| count.fract() == 0.0);
         let size = nodes[counts.len().clamp(1, nodes.len()) - 1];
         let rule = |count: &f64| {
-            // Counts are positive and far below 2^53: the casts are exact for whole counts.
-            #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss)]
+            #[expect(clippy::cast_sign_loss, reason = "counts are positive")]
             if whole && (combinations <= enumerated || *count < size as f64) {
                 Rule::binomial(*count as u64, p)
             } else {

@@ -38,8 +38,6 @@ impl Model {
         let fitness = |g0: f64| finite_or_lost(self.log_fitness(&Programme::generalist(g0)));
         let half = (self.bound / GRID_STEP).ceil().clamp(8.0, 400.0);
         let mut places = vec![0.0];
-        // The casts are exact: at most 400 points on each side.
-        #[expect(clippy::cast_possible_truncation)]
         places.extend((1..=half as i32).flat_map(|k| {
             let g0 = f64::from(k) / half * self.bound;
             [g0, -g0]

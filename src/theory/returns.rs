@@ -203,6 +203,12 @@ impl TaskReturn {
         if exposed { self.surface_effect } else { self.interior_effect }
     }
 
+    /// The return at `x` >= 0 of a cell of that exposure: `effect * curve(x)`.
+    #[must_use]
+    pub fn value(&self, x: f64, exposed: bool) -> f64 {
+        self.effect(exposed) * self.curve.value(x)
+    }
+
     /// Whether surface and interior cells yield differently.
     #[must_use]
     pub fn depends_on_place(&self) -> bool {

@@ -1,11 +1,6 @@
 //! Rules against exact probabilities, moments and textbook nodes.
 
-#![expect(
-    clippy::cast_possible_truncation,
-    clippy::cast_sign_loss,
-    clippy::cast_possible_wrap,
-    reason = "small whole numbers"
-)]
+#![expect(clippy::cast_sign_loss, clippy::cast_possible_wrap, reason = "small whole numbers")]
 
 use approx::assert_relative_eq;
 use statrs::distribution::{Binomial, Discrete, Hypergeometric};

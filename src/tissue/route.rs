@@ -1,0 +1,115 @@
+//! Shortest lattice paths, straight as the lattice allows, looked up by displacement.
+//!
+//! With `a >= b >= c` the absolute coordinate differences in falling order, a step changes two
+//! coordinates by one, so the distance in steps is `max(a, (a + b + c) / 2)`.
+
+/// Kinds of steps that a route is made of, as differences along its longest, middle and shortest leg.
+const KINDS: [[i32; 3]; 5] = [[1, 1, 0], [1, 0, 1], [0, 1, 1], [1, -1, 0], [1, 0, -1]];
+
+/// Grid differences of the kinds of steps; padded to a power of two so that look-ups need no check.
+pub(super) type StepTable = [i32; 8];
+
+/// The step table for grid differences `[a, b, c]` of a unit along each leg.
+#[inline]
+pub(super) const fn step_table([a, b, c]: [i32; 3]) -> StepTable {
+    [a + b, a + c, b + c, a - b, a - c, 0, 0, 0]
+}
+
+/// Step sequences for every displacement between two sites of a body.
+#[derive(Debug, Clone)]
+pub(super) struct Routes {
+    steps: Vec<u8>,
+    /// Start of each displacement's steps; the next entry ends them.
+    starts: Vec<u32>,
+    span: usize,
+}
+
+impl Routes {
+    /// Routes between sites whose coordinates differ by at most `span`.
+    pub(super) fn up_to(span: usize) -> Self {
+        let (mut steps, mut starts) = (Vec::new(), vec![0]);
+        for long in 0..=span {
+            for middle in 0..=long {
+                for short in 0..=middle {
+                    if (long + middle + short) % 2 == 0 {
+                        steps.extend(straightest([long, middle, short].map(|leg| leg as i32)));
+                    }
+                    starts.push(steps.len() as u32);
+                }
+            }
+        }
+        Self { steps, starts, span }
+    }
+
+    /// Kinds of steps for differences `long >= middle >= short`.
+    #[inline]
+    pub(super) fn between(&self, [long, middle, short]: [usize; 3]) -> &[u8] {
+        debug_assert!(long <= self.span);
+        let rank = long * (long + 1) * (long + 2) / 6 + middle * (middle + 1) / 2 + short;
+        &self.steps[self.starts[rank] as usize..self.starts[rank + 1] as usize]
+    }
+}
+
+/// Steps of the shortest path that keeps closest to the straight line.
+///
+/// Among equally close sites it takes the one that lags on the shorter legs: where these lead
+/// outwards, that keeps the path inside the body.
+fn straightest(goal: [i32; 3]) -> Vec<u8> {
+    let length = steps_apart([0; 3], goal);
+    let mut here = [0; 3];
+    let mut steps = Vec::new();
+    for taken in 1..=length {
+        let share = f64::from(taken) / f64::from(length);
+        let nearest = KINDS
+            .iter()
+            .enumerate()
+            .map(|(kind, step)| (kind, [0, 1, 2].map(|leg| here[leg] + step[leg])))
+            .filter(|(_, site)| steps_apart(*site, goal) == length - taken)
+            .map(|(kind, site)| {
+                let off_line: f64 = site
+                    .iter()
+                    .zip(goal)
+                    .map(|(at, end)| (f64::from(*at) - share * f64::from(end)).powi(2))
+                    .sum();
+                (off_line + LAG_WEIGHT * f64::from(site[1] + site[2]), kind, site)
+            })
+            .min_by(|one, other| one.0.total_cmp(&other.0));
+        if let Some((_, kind, site)) = nearest {
+            steps.push(kind as u8);
+            here = site;
+        }
+    }
+    steps
+}
+
+/// How much lagging on the shorter legs counts beside the distance from the line.
+const LAG_WEIGHT: f64 = 1e-3;
+
+/// Distance in steps: `max(a, b, c, (a + b + c) / 2)` of the absolute differences.
+fn steps_apart(from: [i32; 3], to: [i32; 3]) -> i32 {
+    let legs = [0, 1, 2].map(|leg| (from[leg] - to[leg]).abs());
+    let half: i32 = legs.iter().sum::<i32>() / 2;
+    legs.into_iter().fold(half, i32::max)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_route_is_as_long_as_the_lattice_distance_and_ends_where_it_should() {
+        let routes = Routes::up_to(16);
+        for long in 0..=16_usize {
+            for middle in 0..=long {
+                for short in (0..=middle).filter(|short| (long + middle + short) % 2 == 0) {
+                    let steps = routes.between([long, middle, short]);
+                    assert_eq!(steps.len(), long.max((long + middle + short) / 2));
+                    let end = steps.iter().fold([0; 3], |end: [i32; 3], &kind| {
+                        [0, 1, 2].map(|leg| end[leg] + KINDS[usize::from(kind)][leg])
+                    });
+                    assert_eq!(end, [long as i32, middle as i32, short as i32]);
+                }
+            }
+        }
+    }
+}

@@ -1,0 +1,22 @@
+//! One file per mechanism: its systems and how they join the schedule.
+
+pub mod ageing;
+pub mod budgets;
+pub mod clock;
+pub mod cues;
+pub mod growth;
+pub mod maturity;
+pub mod reproduction;
+pub mod settlement;
+pub mod support;
+
+use bevy_ecs::query::QueryNotDenseError;
+
+/// The one table that holds all entities of a query.
+///
+/// # Panics
+/// When entities of the query were spawned with different bundles, which the world never does.
+pub(super) fn only_table<T>(tables: Result<impl Iterator<Item = T>, QueryNotDenseError>) -> T {
+    let table = tables.ok().and_then(|mut tables| tables.next());
+    table.expect("all cells, and all colonies, are spawned at once with one bundle")
+}

@@ -1,0 +1,12 @@
+//! The ECS: cells and colonies as entities, one file per mechanism, one schedule.
+//!
+//! Nothing here knows of files or of replicates.
+
+pub mod components;
+pub mod draws;
+pub mod mechanisms;
+pub mod population;
+pub mod resources;
+pub mod schedule;
+
+pub use population::{ColonyView, Population};
