@@ -5,6 +5,7 @@
 //! [`study`], [`report`], [`commands`].
 
 pub mod commands;
+pub mod evolution;
 pub mod record;
 pub mod scenario;
 pub mod stats;

@@ -1,8 +1,9 @@
 //! Return curves between the scenario file and the theory.
 
 use crate::theory::ReturnCurve;
+use crate::theory::returns::MonotoneCubic;
 
-use super::fault::FaultKind;
+use super::fault::{FaultKind, PointsProblem};
 
 /// The curves that the word `curve` can name.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -48,24 +49,31 @@ pub(crate) enum CurveSpec {
 ///
 /// # Errors
 ///
-/// Where theory has no such curve, or refuses its points.
+/// Where theory refuses the points of a table.
 pub(crate) fn build_curve(spec: &CurveSpec, path: &str) -> Result<ReturnCurve, FaultKind> {
-    match spec {
-        CurveSpec::Power { exponent } => Ok(ReturnCurve::Power { exponent: *exponent }),
-        CurveSpec::Saturating { .. } => Err(not_built(path, "saturating")),
-        CurveSpec::Sigmoid { .. } => Err(not_built(path, "sigmoid")),
-        CurveSpec::Table { .. } => Err(not_built(path, "table")),
-    }
+    Ok(match spec {
+        CurveSpec::Power { exponent } => ReturnCurve::Power { exponent: *exponent },
+        CurveSpec::Saturating { half } => ReturnCurve::Saturating { half: *half },
+        CurveSpec::Sigmoid { half, steepness } => {
+            ReturnCurve::Sigmoid { half: *half, steepness: *steepness }
+        }
+        CurveSpec::Table { points } => {
+            ReturnCurve::Table(MonotoneCubic::through(points).map_err(|error| {
+                let problem = PointsProblem::Refused { reason: error.to_string() };
+                FaultKind::Points { key: format!("{path}.points"), problem }
+            })?)
+        }
+    })
 }
 
 /// What the scenario file says to get `curve`.
 pub(crate) fn spec_of(curve: &ReturnCurve) -> CurveSpec {
     match curve {
         ReturnCurve::Power { exponent } => CurveSpec::Power { exponent: *exponent },
+        ReturnCurve::Saturating { half } => CurveSpec::Saturating { half: *half },
+        ReturnCurve::Sigmoid { half, steepness } => {
+            CurveSpec::Sigmoid { half: *half, steepness: *steepness }
+        }
+        ReturnCurve::Table(cubic) => CurveSpec::Table { points: cubic.points().collect() },
     }
-}
-
-fn not_built(path: &str, word: &str) -> FaultKind {
-    let what = format!("{path}.curve = \"{word}\"");
-    FaultKind::NotBuilt { what, instead: "it can be \"power\" for now".into() }
 }

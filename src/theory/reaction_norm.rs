@@ -4,8 +4,11 @@
 
 use std::fmt;
 
+use serde::{Deserialize, Serialize};
+
 /// What a cell can read about its place, its descent or its luck.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case")]
 pub enum Cue {
     /// An independent random draw per cell: +1 with probability `sigmoid(bias)`, else -1.
     Noise,
@@ -99,7 +102,7 @@ pub const NOISE_BIAS_BOUND: f64 = 4.0;
 pub struct Programme {
     /// Baseline g0: logit of the soma share of a cell whose cues are all at their mean.
     pub baseline: f64,
-    /// Responsiveness g_k per cue, in the order of [`Cue::ALL`]; 0 for a cue not in use.
+    /// Responsiveness `g_k` per cue, in the order of [`Cue::ALL`]; 0 for a cue not in use.
     pub responsiveness: [f64; Cue::COUNT],
     /// Logit of the probability that the noise cue reads +1.
     pub noise_bias: f64,

@@ -1,4 +1,12 @@
 //! Return curves: what a task yields for a share of a fully fed cell's budget.
+//!
+//! Outside their domain [0, inf) curves are not defined; a NaN stays a NaN.
+
+mod monotone_cubic;
+
+pub use monotone_cubic::{MonotoneCubic, TableError};
+
+use super::jet::{Jet, Scalar};
 
 /// A return curve on x in [0, inf), x being a budget over `income_eu_per_h`.
 #[derive(Debug, Clone, PartialEq)]
@@ -8,16 +16,173 @@ pub enum ReturnCurve {
         /// Exponent a > 0.
         exponent: f64,
     },
+    /// `x (1 + K) / (x + K)`: diminishing, normalised so that 1 yields 1.
+    Saturating {
+        /// Half-saturation K > 0.
+        half: f64,
+    },
+    /// `H(x) / H(1)` with `H(x) = x^n / (x^n + K^n)` (Hill 1910), normalised so that 1 yields 1.
+    Sigmoid {
+        /// Half-saturation K > 0.
+        half: f64,
+        /// Steepness n > 0.
+        steepness: f64,
+    },
+    /// Monotone cubic through the user's points.
+    Table(MonotoneCubic),
+}
+
+/// Why a curve cannot be made.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+pub enum CurveError {
+    /// A parameter is not a positive, finite number.
+    #[error("`{parameter}` is {value}; it must be a finite number above 0")]
+    NotPositive {
+        /// Name of the parameter in a scenario.
+        parameter: &'static str,
+        /// The value given.
+        value: f64,
+    },
+    /// `K^n` leaves the range of numbers, so that the curve cannot be normalised at 1.
+    #[error(
+        "`half` = {half} with `steepness` = {steepness} makes half^steepness too large; lower one"
+    )]
+    TooSteep {
+        /// Half-saturation given.
+        half: f64,
+        /// Steepness given.
+        steepness: f64,
+    },
+    /// The points of a table do not make a curve.
+    #[error(transparent)]
+    Table(#[from] TableError),
 }
 
 impl ReturnCurve {
+    /// The power curve `x^exponent`.
+    ///
+    /// # Errors
+    /// [`CurveError::NotPositive`] unless `exponent` is finite and above 0.
+    pub fn power(exponent: f64) -> Result<Self, CurveError> {
+        Ok(Self::Power { exponent: positive("exponent", exponent)? })
+    }
+
+    /// The saturating curve with half-saturation `half`.
+    ///
+    /// # Errors
+    /// [`CurveError::NotPositive`] unless `half` is finite and above 0.
+    pub fn saturating(half: f64) -> Result<Self, CurveError> {
+        Ok(Self::Saturating { half: positive("half", half)? })
+    }
+
+    /// The sigmoid curve with half-saturation `half` and steepness `steepness`.
+    ///
+    /// # Errors
+    /// [`CurveError::NotPositive`] unless both are finite and above 0; [`CurveError::TooSteep`]
+    /// when `half^steepness` exceeds 1e300.
+    pub fn sigmoid(half: f64, steepness: f64) -> Result<Self, CurveError> {
+        let (half, steepness) = (positive("half", half)?, positive("steepness", steepness)?);
+        if libm::pow(half, steepness) > 1e300 {
+            return Err(CurveError::TooSteep { half, steepness });
+        }
+        Ok(Self::Sigmoid { half, steepness })
+    }
+
+    /// The monotone cubic through `points`.
+    ///
+    /// # Errors
+    /// [`CurveError::Table`], see [`MonotoneCubic::through`].
+    pub fn table(points: &[[f64; 2]]) -> Result<Self, CurveError> {
+        Ok(Self::Table(MonotoneCubic::through(points)?))
+    }
+
     /// The return at `x` >= 0 (dimensionless).
     #[must_use]
     pub fn value(&self, x: f64) -> f64 {
         match self {
             Self::Power { exponent } => libm::pow(x, *exponent),
+            Self::Saturating { half } => x * (1.0 + half) / (x + half),
+            Self::Sigmoid { half, steepness } => {
+                hill(x, *half, *steepness) / hill(1.0, *half, *steepness)
+            }
+            Self::Table(table) => table.value(x),
         }
     }
+
+    /// The return at `x` >= 0 with its first and second derivative by x.
+    ///
+    /// At x = 0 the derivatives are the limits from the right, which are infinite for a power or
+    /// steepness below 1 (the second one below 2). A table's second derivative jumps at its
+    /// points; there it is that of the piece to the right.
+    #[must_use]
+    pub fn jet(&self, x: f64) -> Jet {
+        match self {
+            Self::Power { exponent } => power_jet(x, *exponent),
+            Self::Saturating { half } => {
+                let (sum, scale) = (x + half, (1.0 + half) * half);
+                Jet {
+                    value: x * (1.0 + half) / sum,
+                    slope: scale / (sum * sum),
+                    curvature: -2.0 * scale / (sum * sum * sum),
+                }
+            }
+            Self::Sigmoid { half, steepness } => {
+                hill_jet(x, *half, *steepness) * hill(1.0, *half, *steepness).recip()
+            }
+            Self::Table(table) => table.jet(x),
+        }
+    }
+
+    /// The return at a number or a jet.
+    #[must_use]
+    pub fn at<S: Scalar>(&self, x: S) -> S {
+        x.lift(|x| self.value(x), |x| self.jet(x))
+    }
+}
+
+fn positive(parameter: &'static str, value: f64) -> Result<f64, CurveError> {
+    if value.is_finite() && value > 0.0 {
+        Ok(value)
+    } else {
+        Err(CurveError::NotPositive { parameter, value })
+    }
+}
+
+fn power_jet(x: f64, a: f64) -> Jet {
+    let bend = a * (a - 1.0);
+    Jet {
+        value: libm::pow(x, a),
+        slope: a * monomial(x, a - 1.0),
+        // A straight line has no bend at x = 0 either, where the power is infinite.
+        curvature: if bend == 0.0 { 0.0 } else { bend * monomial(x, a - 2.0) },
+    }
+}
+
+/// `x^p` with the limit from the right at x = 0.
+fn monomial(x: f64, p: f64) -> f64 {
+    if p == 0.0 { 1.0 } else { libm::pow(x, p) }
+}
+
+fn hill(x: f64, half: f64, steepness: f64) -> f64 {
+    1.0 / (1.0 + libm::pow(half / x, steepness))
+}
+
+/// With H = x^n/(x^n + K^n): H' = n H (1 - H)/x and H'' = H' (n (1 - 2H) - 1)/x.
+fn hill_jet(x: f64, half: f64, steepness: f64) -> Jet {
+    let ratio = libm::pow(half / x, steepness);
+    if x == 0.0 || ratio.is_infinite() {
+        // H ~ (x/K)^n to leading order; the next term, -(x/K)^2n, counts at n = 1 only.
+        let lead = power_jet(x / half, steepness);
+        let next = if steepness - 1.0 == 0.0 { 2.0 } else { 0.0 };
+        return Jet {
+            value: lead.value,
+            slope: lead.slope / half,
+            curvature: (lead.curvature - next) / (half * half),
+        };
+    }
+    let (h, rest) = (1.0 / (1.0 + ratio), 1.0 / (1.0 + 1.0 / ratio));
+    let slope = steepness * h * rest / x;
+    Jet { value: h, slope, curvature: slope * (steepness * (rest - h) - 1.0) / x }
 }
 
 /// One task's return: the curve, and how a cell's position scales it.
@@ -50,3 +215,6 @@ impl TaskReturn {
         self.surface_effect.total_cmp(&self.interior_effect).is_ne()
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,4 +1,4 @@
-//! Checks of the library against values from outside it, one file per subject.
+//! Checks of the library and the program against values from outside, one file per subject.
 
 mod command_fixture;
 mod command_output;
@@ -15,3 +15,8 @@ mod stats_binomial;
 mod stats_division_of_labour;
 mod stats_mean;
 mod stats_survival;
+mod theory_best;
+mod theory_critical;
+mod theory_fitness;
+mod theory_models;
+mod theory_selection;

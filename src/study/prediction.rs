@@ -1,0 +1,204 @@
+//! What theory says of a scenario, without simulating a population.
+//!
+//! Growth is taken to be synchronous, as it is with `division_cv = 0`; with variable division
+//! costs the time of growth and the labels it leaves are those of the mean cost.
+
+use std::collections::BTreeMap;
+
+use serde::Serialize;
+
+use crate::scenario::Settings;
+use crate::theory::best::BETTER;
+use crate::theory::critical::{global_critical, local_critical};
+use crate::theory::lineage::label_compositions;
+use crate::theory::reaction_norm::NOISE_BIAS_BOUND;
+use crate::theory::{
+    BestProgramme, Compositions, Cue, CueSelection, Generalist, LifeHistory, Model,
+};
+
+/// What `predict --json` prints. Numbers that are not finite are null.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Prediction {
+    /// The scenario's title.
+    pub title: String,
+    /// The best body whose cells are all alike.
+    pub generalist: GeneralistPart,
+    /// Selection on each enabled cue at that generalist.
+    pub cues: Vec<CuePart>,
+    /// The best programme over all heritable traits.
+    pub best: BestPart,
+    /// The overall verdict.
+    pub verdict: &'static str,
+    /// Where verdicts change, if that was asked for.
+    pub critical: Option<CriticalPart>,
+}
+
+/// The generalist optimum.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct GeneralistPart {
+    /// Soma share of every cell.
+    pub soma_share: f64,
+    /// Expected propagules per founder.
+    pub r0: Option<f64>,
+}
+
+/// Selection on one cue.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct CuePart {
+    /// The cue's name.
+    pub cue: &'static str,
+    /// First derivative of ln R0 by its responsiveness; null where R0 is 0.
+    pub gradient: Option<f64>,
+    /// Second derivative.
+    pub curvature: Option<f64>,
+    /// What they mean.
+    pub verdict: &'static str,
+}
+
+/// The best programme.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct BestPart {
+    /// `baseline`, every enabled cue's responsiveness by its name, and `noise_bias` with `noise`.
+    pub traits: BTreeMap<&'static str, f64>,
+    /// Expected propagules per founder.
+    pub r0: Option<f64>,
+    /// Expected division index of a body.
+    pub division_index: f64,
+    /// Expected share of soma cells.
+    pub soma_fraction: f64,
+    /// Commonest class of body.
+    pub class: &'static str,
+}
+
+/// Critical values of one or several keys, moved together.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct CriticalPart {
+    /// The keys.
+    pub keys: Vec<String>,
+    /// Where the local verdict changes; null where it does not.
+    pub local: Option<f64>,
+    /// Where the global verdict changes; null where it does not.
+    pub global: Option<f64>,
+}
+
+/// A question about critical values.
+#[derive(Debug, Clone, PartialEq)]
+pub struct CriticalQuery {
+    /// Keys that move together.
+    pub keys: Vec<String>,
+    /// Their value at one end of the bracket, finite.
+    pub low: f64,
+    /// Their value at the other end, finite.
+    pub high: f64,
+}
+
+/// What theory says of a scenario.
+#[must_use]
+pub fn predict(settings: &Settings) -> Prediction {
+    let model = model(settings);
+    let generalist = model.generalist();
+    let selection = model.selection_at(&generalist);
+    let best = model.best_programme(&generalist);
+    let better_elsewhere = best.outdoes(&generalist, BETTER);
+    Prediction {
+        title: settings.title.clone(),
+        generalist: generalist_part(&generalist),
+        cues: selection.iter().map(cue_part).collect(),
+        best: best_part(&best, settings),
+        verdict: Model::verdict(&selection, better_elsewhere).name(),
+        critical: None,
+    }
+}
+
+/// What theory says of a scenario, with the critical values of some keys. `settings_at` is the
+/// scenario with those keys at a value (between `query.low` and `query.high`).
+///
+/// # Errors
+/// Whatever `settings_at` returns for a value that makes no scenario.
+pub fn predict_with_critical<E>(
+    settings: &Settings,
+    query: &CriticalQuery,
+    mut settings_at: impl FnMut(f64) -> Result<Settings, E>,
+) -> Result<Prediction, E> {
+    let mut model_at = |value| Ok(model(&settings_at(value)?));
+    let local = local_critical(&mut model_at, query.low, query.high)?;
+    let global = global_critical(&mut model_at, query.low, query.high)?;
+    let critical = CriticalPart { keys: query.keys.clone(), local, global };
+    Ok(Prediction { critical: Some(critical), ..predict(settings) })
+}
+
+/// The generalist optimum of a scenario, where evolution starts with `baseline = "optimum"`.
+#[must_use]
+pub fn generalist_of(settings: &Settings) -> Generalist {
+    model(settings).generalist()
+}
+
+/// What theory needs of a scenario.
+#[must_use]
+pub fn model(settings: &Settings) -> Model {
+    let life = LifeHistory {
+        propagule_cells: settings.life.propagule_cells as u64,
+        adult_cells: settings.body.adult_cells as u64,
+        propagule_cost_eu: settings.life.propagule_cost_eu,
+        adult_hazard_per_h: settings.life.adult_hazard_per_h,
+        extrinsic_hazard_per_h: settings.life.extrinsic_hazard_per_h,
+        juvenile_hazard_per_h: settings.life.juvenile_hazard_per_h,
+        income_eu_per_h: settings.budget.income_eu_per_h,
+        upkeep_eu_per_h: settings.budget.upkeep_eu_per_h,
+        division_cost_eu: settings.budget.division_cost_eu,
+        cost_per_unit: settings.traits.cost_per_unit,
+    };
+    let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
+    Model::new(life, returns, settings.traits.cues, &compositions(settings))
+        .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
+        .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
+}
+
+/// Adult bodies of a scenario with their weights: the one place where theory learns what bodies
+/// are like.
+///
+/// SEAM: labels are exact, but every cell is taken to lie at the surface, which is right for
+/// bodies of up to 12 cells only. For larger ones sample bodies with joint counts of label and
+/// exposure here. It matters where the exposure cue is on or a task has unequal surface and
+/// interior effects ([`Settings::exposure_matters`]).
+#[must_use]
+pub fn compositions(settings: &Settings) -> Compositions {
+    label_compositions(settings.body.adult_cells as u64, settings.life.propagule_cells as u64)
+}
+
+fn generalist_part(generalist: &Generalist) -> GeneralistPart {
+    GeneralistPart { soma_share: generalist.soma_share, r0: finite(generalist.r0) }
+}
+
+fn cue_part(selection: &CueSelection) -> CuePart {
+    CuePart {
+        cue: selection.cue.name(),
+        gradient: finite(selection.gradient),
+        curvature: finite(selection.curvature),
+        verdict: selection.verdict().name(),
+    }
+}
+
+fn best_part(best: &BestProgramme, settings: &Settings) -> BestPart {
+    let mut traits = BTreeMap::from([("baseline", best.programme.baseline)]);
+    for cue in settings.traits.cues.iter() {
+        traits.insert(cue.name(), best.programme.responsiveness[cue.index()]);
+    }
+    if settings.traits.cues.contains(Cue::Noise) {
+        traits.insert("noise_bias", best.programme.noise_bias);
+    }
+    BestPart {
+        traits,
+        r0: finite(best.r0),
+        division_index: best.outcome.division_index,
+        soma_fraction: best.outcome.soma_fraction,
+        class: best.outcome.class.name(),
+    }
+}
+
+fn finite(value: f64) -> Option<f64> {
+    value.is_finite().then_some(value)
+}
+
+#[cfg(test)]
+mod tests;
