@@ -57,9 +57,9 @@ impl Model {
             Summit { value, ..summit }
         });
         let top = measured.max_by(|a, b| a.value.total_cmp(&b.value)).map(|summit| {
-            let summit = polish(&height, bounds, summit, 0.01, 20);
-            let summit = climb(&height, bounds, &summit.at, 0.002, 80);
-            polish(&height, bounds, summit, 5e-4, 60)
+            let summit = polish(&height, bounds, summit, 0.01, 16);
+            let summit = climb(&height, bounds, &summit.at, 0.002, 60);
+            polish(&height, bounds, summit, 2e-4, 40)
         });
         let bar = finite_or_lost(libm::log(generalist.r0)) + ROUNDING;
         let programme = match top {

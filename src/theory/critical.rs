@@ -7,7 +7,7 @@ const LOCAL_LOOKS: u32 = 48;
 const GLOBAL_LOOKS: u32 = 16;
 /// Halvings of the interval with the change: to the last digits of a double.
 const LOCAL_HALVINGS: u32 = 48;
-const GLOBAL_HALVINGS: u32 = 36;
+const GLOBAL_HALVINGS: u32 = 28;
 /// Gain in ln R0 from which a differentiated programme counts as better, when locating where it
 /// becomes so.
 const JUST_BETTER: f64 = 1e-11;

@@ -20,8 +20,9 @@ pub(super) struct Fineness {
     nodes: [usize; 4],
 }
 
-/// R0 to about 1e-9 or better, and exactly where combinations are few.
-const FINE: Fineness = Fineness { enumerated: 4096.0, nodes: [24, 24, 10, 6] };
+/// R0 exactly where combinations are few, to about 1e-11 otherwise; to 1e-5 at worst, where `m_ext` is
+/// hundreds of times m0, so that all hangs on the odds of a body without soma.
+const FINE: Fineness = Fineness { enumerated: 1100.0, nodes: [24, 12, 9, 7] };
 /// R0 to a per mille or so, for finding one's way.
 const COARSE: Fineness = Fineness { enumerated: 65.0, nodes: [12, 6, 4, 3] };
 /// Bodies that a sketch keeps as they are, at most.

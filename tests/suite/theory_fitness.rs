@@ -8,6 +8,7 @@ use somadawn::theory::reaction_norm::sigmoid;
 use somadawn::theory::{
     CellKind, Composition, Cue, CueSet, LifeHistory, Model, Programme, ReturnCurve, TaskReturn,
 };
+use statrs::distribution::{Binomial, Discrete};
 
 use crate::theory_models::{bare_life, bodies, only, power, random_fates};
 
@@ -95,63 +96,83 @@ fn r0_is_the_mean_over_every_draw_of_fates() {
 #[test]
 fn r0_averages_over_which_mothers_divide_last() {
     let life = LifeHistory { adult_cells: 7, ..life(0.002) };
+    let mut programme = programme();
+    programme.responsiveness[Cue::Exposure.index()] = 0.0;
     let mut exact = 0.0;
-    for spared in 0..4 {
-        let mut cells = vec![([-1, 1, -1, 1][spared], true)];
+    for spared in [-1, 1, -1, 1] {
+        let mut cells = vec![(spared, true)];
         cells.extend([(-1, true), (1, true)].repeat(3));
-        exact += 0.25 * by_every_draw(&life, &tasks(), &cells, &programme());
+        exact += 0.25 * by_every_draw(&life, &tasks(), &cells, &programme);
     }
     let cues = only(Cue::Lineage).with(Cue::Noise);
     let model = Model::new(life, tasks(), cues, &label_compositions(7, 1));
-    let mut blind = programme();
-    blind.responsiveness[Cue::Exposure.index()] = 0.0;
-    let mut exact_blind = 0.0;
-    for spared in 0..4 {
-        let mut cells = vec![([-1, 1, -1, 1][spared], true)];
-        cells.extend([(-1, true), (1, true)].repeat(3));
-        exact_blind += 0.25 * by_every_draw(model.life(), &tasks(), &cells, &blind);
-    }
-    assert_relative_eq!(model.expected_propagules(&blind), exact_blind, max_relative = 1e-12);
-    assert!(exact > 0.0);
+    assert_relative_eq!(model.expected_propagules(&programme), exact, max_relative = 1e-12);
 }
 
-/// Large bodies of two kinds go through Gauss rules; here against the full double sum over both
-/// binomial counts.
-#[test]
-fn gauss_rules_keep_r0_of_large_bodies() {
-    use statrs::distribution::{Binomial, Discrete};
-    let (half, extrinsic) = (100_u64, 0.02);
-    let life = LifeHistory { extrinsic_hazard_per_h: extrinsic, ..bare_life() };
-    let life = LifeHistory { adult_hazard_per_h: 0.004, ..life };
-    let kind = |label| CellKind { label, exposed: true };
-    let body = Composition::of([(kind(-1), half as f64), (kind(1), half as f64)]);
-    let cues = only(Cue::Lineage).with(Cue::Noise);
-    let model = Model::new(life, [power(1.7), power(1.3)], cues, &[(1.0, body)]);
-    for noise_bias in [0.0, -1.5, 2.5, -4.0] {
-        let programme =
-            Programme { baseline: -0.2, responsiveness: [3.0, 0.9, 0.0, 0.0], noise_bias };
-        let p = programme.noise_probability();
-        let returns = |label: f64, plus: bool| {
-            let noise = if plus { 1.0 } else { -1.0 } - (2.0 * p - 1.0);
-            let z = programme.soma_share(&[noise, label, 0.0, 0.0]);
-            (z.powf(1.7), (1.0 - z).powf(1.3))
+/// Mean of `B V / (m_ext V + m0)` over every combination of the classes' binomial counts, whose
+/// probabilities are the exact ones of the distribution.
+fn by_every_count(fates: &[(u64, [f64; 4])], luck: f64, m_ext: f64, m0: f64) -> f64 {
+    let cells: u64 = fates.iter().map(|fate| fate.0).sum();
+    let mut sums = vec![(1.0, 0.0, 0.0)];
+    for (count, [v_plus, b_plus, v_minus, b_minus]) in fates {
+        let binomial = Binomial::new(luck, *count).expect("legal");
+        let likely = (0..=*count).map(|k| (k as f64, (count - k) as f64, binomial.pmf(k)));
+        let likely: Vec<_> = likely.filter(|(_, _, probability)| *probability > 1e-16).collect();
+        let add = |(weight, v, b): &(f64, f64, f64)| {
+            let (weight, v, b) = (*weight, *v, *b);
+            let with = likely.iter().map(move |(plus, minus, probability)| {
+                let v = v + plus * v_plus + minus * v_minus;
+                (weight * probability, v, b + plus * b_plus + minus * b_minus)
+            });
+            with.collect::<Vec<_>>()
         };
-        let count = Binomial::new(p, half).expect("legal");
-        let mut exact = 0.0;
-        for first in 0..=half {
-            for second in 0..=half {
-                let (mut v, mut b) = (0.0, 0.0);
-                for (label, plus) in [(-1.0, first), (1.0, second)] {
-                    let ((v1, b1), (v0, b0)) = (returns(label, true), returns(label, false));
-                    v += (plus as f64 * v1 + (half - plus) as f64 * v0) / (2 * half) as f64;
-                    b += plus as f64 * b1 + (half - plus) as f64 * b0;
-                }
-                let likely = count.pmf(first) * count.pmf(second);
-                exact += likely * b / (extrinsic + 0.004 / v);
+        sums = sums.iter().flat_map(add).collect();
+    }
+    let terms = sums.iter().map(|(weight, v, b)| {
+        let v = v / cells as f64;
+        weight * b * v / (m_ext * v + m0)
+    });
+    terms.sum()
+}
+
+/// Large bodies of several kinds go through Gauss rules, small ones are summed count by count.
+#[test]
+fn r0_of_large_bodies_is_the_mean_over_every_count() {
+    let kinds = [(-1, true), (1, true), (-1, false), (1, false)];
+    let bodies: [&[u64]; 5] = [&[600], &[32, 32], &[100, 100], &[40, 30, 24], &[16, 20, 12, 16]];
+    for counts in bodies {
+        let classes = kinds.iter().zip(counts);
+        let classes: Vec<_> = classes.map(|(&(label, exposed), n)| (label, exposed, *n)).collect();
+        let kind = |label, exposed| CellKind { label, exposed };
+        let body = Composition::of(classes.iter().map(|c| (kind(c.0, c.1), c.2 as f64)));
+        // m_ext over m0, and the accuracy that is promised there.
+        for (m_ext, tolerance) in [(0.001, 1e-11), (0.02, 1e-10), (1.0, 1e-5)] {
+            let life = LifeHistory { extrinsic_hazard_per_h: m_ext, ..bare_life() };
+            let life = LifeHistory { adult_hazard_per_h: 0.004, ..life };
+            let tasks = [power(1.7), power(1.3)];
+            let model = Model::new(life, tasks, all_cues(), &[(1.0, body.clone())]);
+            for (noise, noise_bias) in [(0.5, 0.0), (8.0, -1.5), (3.0, 2.5), (3.0, -4.0)] {
+                let responsiveness = [noise, 0.9, -0.5, 0.0];
+                let programme = Programme { baseline: -0.2, responsiveness, noise_bias };
+                let luck = programme.noise_probability();
+                let label = body.mean(|kind| f64::from(kind.label));
+                let exposure = body.mean(|kind| f64::from(u8::from(kind.exposed)));
+                let fate = |c: &(i8, bool, u64)| {
+                    let share = |noise: f64| {
+                        let place = f64::from(u8::from(c.1)) - exposure;
+                        let noise = noise - (2.0 * luck - 1.0);
+                        programme.soma_share(&[noise, f64::from(c.0) - label, place, 0.0])
+                    };
+                    let (plus, minus) = (share(1.0), share(-1.0));
+                    let births = |z: f64| (1.0 - z).powf(1.3);
+                    (c.2, [plus.powf(1.7), births(plus), minus.powf(1.7), births(minus)])
+                };
+                let fates: Vec<_> = classes.iter().map(fate).collect();
+                let exact = by_every_count(&fates, luck, m_ext, 0.004);
+                let found = model.expected_propagules(&programme);
+                assert_relative_eq!(found, exact, max_relative = tolerance);
             }
         }
-        let found = model.expected_propagules(&programme);
-        assert_relative_eq!(found, exact, max_relative = 1e-9);
     }
 }
 

@@ -15,7 +15,7 @@ pub(crate) fn power(exponent: f64) -> TaskReturn {
 }
 
 /// A life without growth in which R0 is `E[mean v * mean b]` per cell of a unit-cost body:
-/// e0 = c_p = m0 = 1.
+/// `e0 = c_p = m0 = 1`.
 pub(crate) fn bare_life() -> LifeHistory {
     LifeHistory {
         propagule_cells: 1,

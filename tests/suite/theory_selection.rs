@@ -29,7 +29,7 @@ fn the_generalist_optimum_is_the_closed_form() {
 
 /// Curvature of ln R0 by g at 0: the logit's variance g^2 gives Var(z) = g^2 (z (1 - z))^2, and
 /// the mean logit being held, the shift of the mean of z costs nothing at the optimum; so it is
-/// dispersion_gain * (z (1 - z))^2.
+/// `dispersion_gain (z (1 - z))^2`.
 #[test]
 fn curvature_of_random_fates_is_the_closed_form() {
     for n in [Some(2), Some(3), Some(7), Some(64), Some(1000), None] {
