@@ -5,6 +5,7 @@
 //! [`study`], [`report`], [`commands`].
 
 pub mod record;
+pub mod report;
 pub mod scenario;
 pub mod stats;
 pub mod theory;
