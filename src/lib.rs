@@ -7,6 +7,7 @@
 pub mod commands;
 pub mod evolution;
 pub mod record;
+pub mod report;
 pub mod scenario;
 pub mod stats;
 pub mod study;

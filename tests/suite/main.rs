@@ -7,6 +7,8 @@ mod record_folder;
 mod record_run;
 mod record_sample;
 mod record_summary;
+mod report_agreement;
+mod report_screen;
 mod scenario_overrides;
 mod scenario_properties;
 mod scenario_settings;
