@@ -2,7 +2,7 @@
 //! the vacant site nearest the body's centre.
 
 use super::lattice::Lattice;
-use super::route::{Routes, StepTable, step_table};
+use super::route::{PACE, Routes, StepTable, step_table};
 
 /// Marks a place of the grid that holds no cell.
 pub(super) const VACANT: u32 = u32::MAX;
@@ -14,8 +14,11 @@ pub(super) struct Crowd {
     routes: Routes,
     /// Scratch of the search that serves where no straight path stays inside the body.
     came_from: Vec<u32>,
-    /// The path of the push at hand, `length` places from the one next to the mother to the target.
+    /// The path of the push at hand, `length` places long, to the target. It may linger on the
+    /// mother's place before it sets out.
     path: Vec<u32>,
+    /// Who stands on each place of the path.
+    shoved: Vec<u32>,
     length: usize,
 }
 
@@ -24,8 +27,10 @@ pub(super) struct Crowd {
 pub(super) struct Newcomer {
     /// Its number.
     pub(super) cell: u32,
-    /// The place of its mother.
+    /// The number of its mother.
     pub(super) mother: u32,
+    /// The place of its mother.
+    pub(super) beside: u32,
     /// The empty place that the push ends at.
     pub(super) target: u32,
     /// Random bits that decide between equally short paths.
@@ -34,11 +39,13 @@ pub(super) struct Newcomer {
 
 impl Crowd {
     pub(super) fn on(lattice: &Lattice) -> Self {
+        let longest = 2 * lattice.span() + 2 + PACE;
         Self {
             occupant: vec![VACANT; lattice.grid_len()],
             routes: Routes::up_to(lattice.span()),
             came_from: Vec::new(),
-            path: vec![VACANT; 2 * lattice.span() + 2],
+            path: vec![VACANT; longest],
+            shoved: vec![VACANT; longest],
             length: 0,
         }
     }
@@ -63,14 +70,22 @@ impl Crowd {
     /// target by one site; `places` (place of each cell) follows.
     #[inline]
     pub(super) fn push_in(&mut self, lattice: &Lattice, newcomer: Newcomer, places: &mut [u32]) {
-        if !self.go_straight(lattice, newcomer) && !self.go_round(lattice, newcomer) {
-            self.search_path(lattice, newcomer);
+        // While its mother's place is the newcomer's, a path that lingers there does no harm.
+        self.occupant[newcomer.beside as usize] = newcomer.cell;
+        if !self.go_straight(lattice, newcomer) {
+            self.go_round(lattice, newcomer);
         }
         let mut moved = newcomer.cell;
-        for &place in &self.path[..self.length] {
-            places[moved as usize] = place;
-            std::mem::swap(&mut self.occupant[place as usize], &mut moved);
+        let (path, _) = self.path[..self.length].as_chunks::<PACE>();
+        let (shoved, _) = self.shoved[..self.length].as_chunks::<PACE>();
+        for (path, shoved) in path.iter().zip(shoved) {
+            for (&place, &there) in path.iter().zip(shoved) {
+                places[moved as usize] = place;
+                self.occupant[place as usize] = moved;
+                moved = there;
+            }
         }
+        self.occupant[newcomer.beside as usize] = newcomer.mother;
     }
 
     /// Finds the straightest shortest path; `false` where that leaves the body.
@@ -78,23 +93,46 @@ impl Crowd {
     fn go_straight(&mut self, lattice: &Lattice, newcomer: Newcomer) -> bool {
         let (legs, steps) = legs_between(lattice, newcomer);
         let kinds = self.routes.between(legs);
-        let mut here = newcomer.mother;
+        let mut here = newcomer.beside;
         let mut gaps = 0;
-        for (place, &kind) in self.path.iter_mut().zip(kinds) {
-            here = here.wrapping_add_signed(steps[usize::from(kind & 7)]);
-            gaps += u32::from(self.occupant[here as usize] == VACANT);
-            *place = here;
+        let (path, _) = self.path.as_chunks_mut::<PACE>();
+        let (shoved, _) = self.shoved.as_chunks_mut::<PACE>();
+        for ((path, shoved), kinds) in path.iter_mut().zip(shoved).zip(kinds) {
+            for ((place, there), &kind) in path.iter_mut().zip(shoved).zip(kinds) {
+                here = here.wrapping_add_signed(steps[usize::from(kind & 7)]);
+                *there = self.occupant[here as usize];
+                *place = here;
+                gaps += u32::from(*there == VACANT);
+            }
         }
-        self.length = kinds.len();
+        self.length = kinds.len() * PACE;
         // The target is a gap of its own.
         gaps == 1
     }
 
-    /// Finds a shortest path step by step through occupied sites; `false` at a dead end.
+    /// Finds a shortest path through occupied sites: step by step, or by searching where that ends
+    /// in a dead end.
     #[cold]
-    fn go_round(&mut self, lattice: &Lattice, newcomer: Newcomer) -> bool {
+    fn go_round(&mut self, lattice: &Lattice, newcomer: Newcomer) {
+        if !self.find_way(lattice, newcomer) {
+            self.search_path(lattice, newcomer);
+        }
+        // Round up to whole paces.
+        let lingering = self.length.next_multiple_of(PACE) - self.length;
+        self.length += lingering;
+        self.path.resize(self.path.len().max(self.length), VACANT);
+        self.shoved.resize(self.path.len(), VACANT);
+        self.path[..self.length].rotate_right(lingering);
+        self.path[..lingering].fill(newcomer.beside);
+        for (there, place) in self.shoved.iter_mut().zip(&self.path[..self.length]) {
+            *there = self.occupant[*place as usize];
+        }
+    }
+
+    /// Finds a shortest path step by step through occupied sites; `false` at a dead end.
+    fn find_way(&mut self, lattice: &Lattice, newcomer: Newcomer) -> bool {
         let goal = newcomer.target;
-        let mut here = newcomer.mother;
+        let mut here = newcomer.beside;
         self.length = 0;
         while here != goal {
             let nearer = lattice.steps_between(here, goal) - 1;
@@ -113,13 +151,12 @@ impl Crowd {
     }
 
     /// Breadth-first search through occupied places, shortest inside the body.
-    #[cold]
     fn search_path(&mut self, lattice: &Lattice, newcomer: Newcomer) {
-        let Newcomer { mother, target, ties, .. } = newcomer;
+        let Newcomer { beside, target, ties, .. } = newcomer;
         self.came_from.clear();
         self.came_from.resize(self.occupant.len(), VACANT);
-        self.came_from[mother as usize] = mother;
-        let mut queue = std::collections::VecDeque::from([mother]);
+        self.came_from[beside as usize] = beside;
+        let mut queue = std::collections::VecDeque::from([beside]);
         while self.came_from[target as usize] == VACANT
             && let Some(here) = queue.pop_front()
         {
@@ -134,7 +171,7 @@ impl Crowd {
         }
         let mut found = Vec::new();
         let mut here = target;
-        while here != mother {
+        while here != beside {
             found.push(here);
             here = self.came_from[here as usize];
         }
@@ -152,7 +189,7 @@ impl Crowd {
 /// how a path that must go sideways stays among cells. Equal legs are ordered by the random bits.
 #[inline]
 fn legs_between(lattice: &Lattice, newcomer: Newcomer) -> ([usize; 3], StepTable) {
-    let start = lattice.coordinates(newcomer.mother);
+    let start = lattice.coordinates(newcomer.beside);
     let goal = lattice.coordinates(newcomer.target);
     let strides = lattice.strides();
     let mut towards = [0_i32; 4];

@@ -6,6 +6,13 @@
 /// Kinds of steps that a route is made of, as differences along its longest, middle and shortest leg.
 const KINDS: [[i32; 3]; 5] = [[1, 1, 0], [1, 0, 1], [0, 1, 1], [1, -1, 0], [1, 0, -1]];
 
+/// Routes are walked this many steps at a time: nearly all pushes in bodies of up to a hundred cells
+/// take one pace, which the processor can foresee.
+pub(super) const PACE: usize = 4;
+
+/// The kind of step that stays where it is.
+const LINGER: u8 = 7;
+
 /// Grid differences of the kinds of steps; padded to a power of two so that look-ups need no check.
 pub(super) type StepTable = [i32; 8];
 
@@ -18,8 +25,8 @@ pub(super) const fn step_table([a, b, c]: [i32; 3]) -> StepTable {
 /// Step sequences for every displacement between two sites of a body.
 #[derive(Debug, Clone)]
 pub(super) struct Routes {
-    steps: Vec<u8>,
-    /// Start of each displacement's steps; the next entry ends them.
+    paces: Vec<[u8; PACE]>,
+    /// Start of each displacement's paces; the next entry ends them.
     starts: Vec<u32>,
     span: usize,
 }
@@ -27,27 +34,37 @@ pub(super) struct Routes {
 impl Routes {
     /// Routes between sites whose coordinates differ by at most `span`.
     pub(super) fn up_to(span: usize) -> Self {
-        let (mut steps, mut starts) = (Vec::new(), vec![0]);
+        let (mut paces, mut starts) = (Vec::new(), vec![0]);
         for long in 0..=span {
             for middle in 0..=long {
                 for short in 0..=middle {
                     if (long + middle + short) % 2 == 0 {
-                        steps.extend(straightest([long, middle, short].map(|leg| leg as i32)));
+                        let steps = straightest([long, middle, short].map(|leg| leg as i32));
+                        paces.extend(in_paces(&steps));
                     }
-                    starts.push(steps.len() as u32);
+                    starts.push(paces.len() as u32);
                 }
             }
         }
-        Self { steps, starts, span }
+        Self { paces, starts, span }
     }
 
-    /// Kinds of steps for differences `long >= middle >= short`.
+    /// Kinds of steps for differences `long >= middle >= short`, in whole paces: routes linger at
+    /// their start as long as it takes.
     #[inline]
-    pub(super) fn between(&self, [long, middle, short]: [usize; 3]) -> &[u8] {
+    pub(super) fn between(&self, [long, middle, short]: [usize; 3]) -> &[[u8; PACE]] {
         debug_assert!(long <= self.span);
         let rank = long * (long + 1) * (long + 2) / 6 + middle * (middle + 1) / 2 + short;
-        &self.steps[self.starts[rank] as usize..self.starts[rank + 1] as usize]
+        &self.paces[self.starts[rank] as usize..self.starts[rank + 1] as usize]
     }
+}
+
+/// The same steps in whole paces, with as much lingering before them as that takes.
+fn in_paces(steps: &[u8]) -> Vec<[u8; PACE]> {
+    let lingering = steps.len().next_multiple_of(PACE) - steps.len();
+    let kinds: Vec<u8> =
+        std::iter::repeat_n(LINGER, lingering).chain(steps.iter().copied()).collect();
+    kinds.as_chunks().0.to_vec()
 }
 
 /// Steps of the shortest path that keeps closest to the straight line.
@@ -102,7 +119,10 @@ mod tests {
         for long in 0..=16_usize {
             for middle in 0..=long {
                 for short in (0..=middle).filter(|short| (long + middle + short) % 2 == 0) {
-                    let steps = routes.between([long, middle, short]);
+                    let kinds = routes.between([long, middle, short]).as_flattened();
+                    let first = kinds.iter().position(|kind| *kind != LINGER);
+                    let steps = &kinds[first.unwrap_or(kinds.len())..];
+                    assert!(kinds.len() < steps.len() + PACE);
                     assert_eq!(steps.len(), long.max((long + middle + short) / 2));
                     let end = steps.iter().fold([0; 3], |end: [i32; 3], &kind| {
                         [0, 1, 2].map(|leg| end[leg] + KINDS[usize::from(kind)][leg])
