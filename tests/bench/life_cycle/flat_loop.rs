@@ -17,6 +17,7 @@ use rand_xoshiro::Xoshiro256PlusPlus;
 use somadawn::scenario::Settings;
 use somadawn::theory::{Cue, Programme};
 use somadawn::tissue::{Growth, Pace};
+use somadawn::world::components::{HeadStart, PropaguleStock, StockRate, StockSince, StockUntil};
 use somadawn::world::draws::{exponential, mutated, weighted_index};
 use somadawn::world::resources::{Event, Genotype, Ledger};
 
@@ -30,8 +31,31 @@ struct Colony {
     dies_h: f64,
     viability: f64,
     fecundity: f64,
-    head_start: f64,
-    releases_per_h: f64,
+}
+
+/// Stocks for propagules, one array per number: all sites are gone through at every tick.
+#[derive(Debug, Clone)]
+struct Stocks {
+    since_h: Vec<f64>,
+    until_h: Vec<f64>,
+    head_start: Vec<f64>,
+    per_h: Vec<f64>,
+}
+
+impl Stocks {
+    fn none(sites: usize) -> Self {
+        let zeros = || vec![0.0; sites];
+        Self { since_h: zeros(), until_h: zeros(), head_start: zeros(), per_h: zeros() }
+    }
+
+    fn of(&self, site: usize) -> PropaguleStock {
+        PropaguleStock {
+            since: StockSince(self.since_h[site]),
+            until: StockUntil(self.until_h[site]),
+            head_start: HeadStart(self.head_start[site]),
+            rate: StockRate(self.per_h[site]),
+        }
+    }
 }
 
 /// Cells as one array per property, each site's cells side by side.
@@ -73,6 +97,7 @@ pub(crate) struct FlatLoop {
     growth: Growth,
     cells: Cells,
     colonies: Vec<Colony>,
+    stocks: Stocks,
     genotypes: Vec<Genotype>,
     adulthoods: BinaryHeap<Reverse<Event>>,
     deaths: BinaryHeap<Reverse<Event>>,
@@ -105,14 +130,13 @@ impl FlatLoop {
             dies_h: 0.0,
             viability: 0.0,
             fecundity: 0.0,
-            head_start: 0.0,
-            releases_per_h: 0.0,
         };
         let mut flat = Self {
             rng,
             growth: Growth::of_clump(settings.life.propagule_cells, n),
             cells: Cells::blank(sites * n),
             colonies: vec![nobody; sites],
+            stocks: Stocks::none(sites),
             genotypes: (0..sites as u32).map(&founder).collect(),
             adulthoods: BinaryHeap::new(),
             deaths: BinaryHeap::new(),
@@ -179,9 +203,11 @@ impl FlatLoop {
             colony.adult = true;
             let hazard = life.extrinsic_hazard_per_h + life.adult_hazard_per_h / colony.viability;
             colony.dies_h = colony.adult_h + exponential(&mut self.rng) / hazard;
-            colony.head_start = self.rng.random();
+            self.stocks.since_h[site] = colony.adult_h;
+            self.stocks.until_h[site] = colony.dies_h;
+            self.stocks.head_start[site] = self.rng.random::<f64>() - 0.5;
             let income = self.settings.budget.income_eu_per_h;
-            colony.releases_per_h = colony.fecundity * income / life.propagule_cost_eu;
+            self.stocks.per_h[site] = colony.fecundity * income / life.propagule_cost_eu;
             self.deaths.push(Reverse(Event { at_h: colony.dies_h, site: site as u32 }));
         }
     }
@@ -231,9 +257,10 @@ impl FlatLoop {
     fn bury(&mut self, now_h: f64) {
         let before = self.vacancies.len();
         while let Some(event) = due(&mut self.deaths, now_h) {
-            let colony = &mut self.colonies[event.site as usize];
-            let lived_h = colony.dies_h - colony.adult_h;
-            self.ledger.lifetime_propagules += stock(colony, lived_h);
+            let site = event.site as usize;
+            let colony = &mut self.colonies[site];
+            self.ledger.lifetime_propagules +=
+                self.stocks.of(site).released_between(colony.adult_h, colony.dies_h);
             (colony.adult, colony.empty) = (false, true);
             self.ledger.deaths += 1;
             self.vacancies.push(event.site);
@@ -246,14 +273,20 @@ impl FlatLoop {
     /// Counts the propagules of each site between two dates, and all of them.
     fn release(&mut self, from_h: f64, to_h: f64) -> u64 {
         let mut total = 0;
-        for (count, colony) in self.released.iter_mut().zip(&self.colonies) {
-            let (from_h, to_h) = (from_h.max(colony.adult_h), to_h.min(colony.dies_h));
-            *count = 0;
-            if from_h < to_h {
-                let [before, after] = [from_h, to_h].map(|h| stock(colony, h - colony.adult_h));
-                *count = (after - before) as u32;
-            }
-            total += u64::from(*count);
+        let Stocks { since_h, until_h, head_start, per_h } = &self.stocks;
+        let stocks = since_h.iter().zip(until_h).zip(head_start).zip(per_h);
+        for (count, (((since_h, until_h), head_start), per_h)) in
+            self.released.iter_mut().zip(stocks)
+        {
+            let stock = PropaguleStock {
+                since: StockSince(*since_h),
+                until: StockUntil(*until_h),
+                head_start: HeadStart(*head_start),
+                rate: StockRate(*per_h),
+            };
+            let here = stock.released_between(from_h, to_h);
+            *count = here as u32;
+            total += here;
         }
         total
     }
@@ -330,9 +363,4 @@ fn due(queue: &mut BinaryHeap<Reverse<Event>>, now_h: f64) -> Option<Event> {
     let first = queue.peek().filter(|next| next.0.at_h <= now_h)?.0;
     queue.pop();
     Some(first)
-}
-
-/// Propagules that a colony has released so many hours after adulthood.
-fn stock(colony: &Colony, hours: f64) -> u64 {
-    (colony.head_start + colony.releases_per_h * hours) as i64 as u64
 }
