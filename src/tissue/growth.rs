@@ -221,6 +221,7 @@ impl Growth {
     }
 
     /// A random vacant site of those nearest the centre, and random bits to spare.
+    #[inline]
     fn draw_target(&mut self, held: usize, random: u32) -> (u32, u32) {
         let (choices, first) = self.open_shell(held);
         let (pick, ties) = below(random, choices);
