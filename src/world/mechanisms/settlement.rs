@@ -74,15 +74,21 @@ fn landings_on_empty(
 
 /// The site whose colony released the propagule of this number.
 fn parent_of(propagule: u64, released: &[u32]) -> usize {
+    const BLOCK: usize = 16;
     let mut left = propagule;
-    released
-        .iter()
-        .position(|&count| {
-            let here = left < u64::from(count);
-            left = left.wrapping_sub(u64::from(count));
-            here
-        })
-        .unwrap_or(0)
+    for (block, counts) in released.chunks(BLOCK).enumerate() {
+        let in_block: u64 = counts.iter().map(|count| u64::from(*count)).sum();
+        if left < in_block {
+            for (offset, &count) in counts.iter().enumerate() {
+                if left < u64::from(count) {
+                    return block * BLOCK + offset;
+                }
+                left -= u64::from(count);
+            }
+        }
+        left -= in_block;
+    }
+    0
 }
 
 /// The genotype of a cell of the parent drawn with probability proportional to `b_i`, mutated.
