@@ -2,11 +2,14 @@
 
 use std::fmt;
 use std::io;
+use std::path::PathBuf;
 
 use miette::Diagnostic;
 use thiserror::Error;
 
+use crate::record::Fault;
 use crate::scenario::ScenarioError;
+use crate::study::run::RunError;
 
 /// Why a command could not be done.
 #[derive(Debug, Error)]
@@ -22,12 +25,25 @@ pub enum Failure {
         /// The template's name that is most like it.
         nearest: Option<&'static str>,
     },
-    /// The verb is known, but this build cannot do it.
-    #[error("`somadawn {verb}` is not built yet")]
-    NotBuilt {
-        /// The verb.
-        verb: &'static str,
+    /// A run could not be done.
+    #[error(transparent)]
+    Run(#[from] RunError),
+    /// A signal ended the run early, with what was finished written.
+    #[error(
+        "stopped: {finished} of {planned} replicates are in {}; the same command goes on with the rest",
+        folder.display()
+    )]
+    Stopped {
+        /// Replicates finished.
+        finished: usize,
+        /// Replicates asked for.
+        planned: u32,
+        /// Where they are.
+        folder: PathBuf,
     },
+    /// The system would not tell of signals.
+    #[error("cannot listen for SIGINT and SIGTERM")]
+    Signals(#[source] io::Error),
     /// The result could not be printed.
     #[error("cannot write the result")]
     Output(#[from] io::Error),
@@ -44,7 +60,9 @@ impl Failure {
         match self {
             Self::Scenario(_) | Self::UnknownTemplate { .. } => 2,
             Self::Output(error) if error.kind() == io::ErrorKind::BrokenPipe => 0,
-            Self::NotBuilt { .. } | Self::Output(_) | Self::Json(_) => 1,
+            Self::Run(RunError::Record(error)) if error.fault() == Fault::Request => 2,
+            Self::Stopped { .. } => 75,
+            Self::Run(_) | Self::Signals(_) | Self::Output(_) | Self::Json(_) => 1,
         }
     }
 }

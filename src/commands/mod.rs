@@ -12,6 +12,7 @@ pub mod exit;
 mod failure;
 mod output;
 pub mod predict;
+mod progress;
 mod reference;
 mod schema;
 mod template;

@@ -2,8 +2,11 @@
 //!
 //! Nothing here knows of the command line.
 
+pub mod evolve;
 pub mod outlook;
 pub mod prediction;
 pub mod run;
+mod start;
 
 pub use prediction::Prediction;
+pub use start::start;
