@@ -22,6 +22,22 @@ pub enum Failure {
         /// The template's name that is most like it.
         nearest: Option<&'static str>,
     },
+    /// A critical value is asked for of something that is no number.
+    #[error("`{key}` is no real number of this scenario, so it has no critical value")]
+    NoCriticalKey {
+        /// The key as given.
+        key: String,
+        /// The number's key that is most like it.
+        nearest: Option<&'static str>,
+    },
+    /// Keys that would move together start from a value that gives no bracket.
+    #[error("`{key}` = {value} does not say where to look for a critical value")]
+    NoBracket {
+        /// The key.
+        key: String,
+        /// Its value in the scenario.
+        value: f64,
+    },
     /// The verb is known, but this build cannot do it.
     #[error("`somadawn {verb}` is not built yet")]
     NotBuilt {
@@ -42,7 +58,10 @@ impl Failure {
     #[must_use]
     pub fn exit_code(&self) -> u8 {
         match self {
-            Self::Scenario(_) | Self::UnknownTemplate { .. } => 2,
+            Self::Scenario(_)
+            | Self::UnknownTemplate { .. }
+            | Self::NoCriticalKey { .. }
+            | Self::NoBracket { .. } => 2,
             Self::Output(error) if error.kind() == io::ErrorKind::BrokenPipe => 0,
             Self::NotBuilt { .. } | Self::Output(_) | Self::Json(_) => 1,
         }
@@ -53,9 +72,11 @@ impl Diagnostic for Failure {
     fn help<'a>(&'a self) -> Option<Box<dyn fmt::Display + 'a>> {
         match self {
             Self::Scenario(error) => error.help(),
-            Self::UnknownTemplate { nearest: Some(name), .. } => {
+            Self::UnknownTemplate { nearest: Some(name), .. }
+            | Self::NoCriticalKey { nearest: Some(name), .. } => {
                 Some(Box::new(format!("did you mean `{name}`?")))
             }
+            Self::NoBracket { .. } => Some(Box::new("give --between LOW,HIGH")),
             Self::UnknownTemplate { .. } => Some(Box::new("`somadawn template` lists them")),
             _ => None,
         }

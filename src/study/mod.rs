@@ -6,4 +6,5 @@ pub mod outlook;
 pub mod prediction;
 pub mod run;
 
+pub use outlook::Outlook;
 pub use prediction::Prediction;
