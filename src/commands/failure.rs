@@ -41,6 +41,22 @@ pub enum Failure {
         /// Where they are.
         folder: PathBuf,
     },
+    /// A critical value is asked for of something that is no number.
+    #[error("`{key}` is no real number of this scenario, so it has no critical value")]
+    NoCriticalKey {
+        /// The key as given.
+        key: String,
+        /// The number's key that is most like it.
+        nearest: Option<&'static str>,
+    },
+    /// Keys that would move together start from a value that gives no bracket.
+    #[error("`{key}` = {value} does not say where to look for a critical value")]
+    NoBracket {
+        /// The key.
+        key: String,
+        /// Its value in the scenario.
+        value: f64,
+    },
     /// The system would not tell of signals.
     #[error("cannot listen for SIGINT and SIGTERM")]
     Signals(#[source] io::Error),
@@ -58,7 +74,10 @@ impl Failure {
     #[must_use]
     pub fn exit_code(&self) -> u8 {
         match self {
-            Self::Scenario(_) | Self::UnknownTemplate { .. } => 2,
+            Self::Scenario(_)
+            | Self::UnknownTemplate { .. }
+            | Self::NoCriticalKey { .. }
+            | Self::NoBracket { .. } => 2,
             Self::Output(error) if error.kind() == io::ErrorKind::BrokenPipe => 0,
             Self::Run(RunError::Record(error)) if error.fault() == Fault::Request => 2,
             Self::Stopped { .. } => 75,
@@ -71,9 +90,11 @@ impl Diagnostic for Failure {
     fn help<'a>(&'a self) -> Option<Box<dyn fmt::Display + 'a>> {
         match self {
             Self::Scenario(error) => error.help(),
-            Self::UnknownTemplate { nearest: Some(name), .. } => {
+            Self::UnknownTemplate { nearest: Some(name), .. }
+            | Self::NoCriticalKey { nearest: Some(name), .. } => {
                 Some(Box::new(format!("did you mean `{name}`?")))
             }
+            Self::NoBracket { .. } => Some(Box::new("give --between LOW,HIGH")),
             Self::UnknownTemplate { .. } => Some(Box::new("`somadawn template` lists them")),
             _ => None,
         }

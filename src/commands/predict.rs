@@ -6,13 +6,8 @@ use clap::Args;
 
 use super::output::{print, print_json};
 use super::{Common, Failure, ScenarioFile};
-use crate::scenario::{Override, Settings};
-use crate::study::prediction::{
-    CriticalQuery, CuePart, Prediction, predict, predict_with_critical,
-};
-
-/// Where critical values are looked for unless the command line says otherwise.
-const DEFAULT_BRACKET: Bracket = Bracket { low: 0.5, high: 3.0 };
+use crate::scenario::{Override, Settings, nearest};
+use crate::study::prediction::{CriticalQuery, Prediction, predict, predict_with_critical};
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -23,7 +18,7 @@ pub struct Arguments {
     /// Keys, moved together, whose critical value is looked for
     #[arg(long, value_name = "KEY[,KEY...]", value_delimiter = ',', num_args = 1)]
     pub critical: Vec<String>,
-    /// Where to look for it [default: 0.5,3]
+    /// Where to look for it
     #[arg(long, value_name = "LOW,HIGH", value_parser = parse_bracket, requires = "critical")]
     #[arg(allow_hyphen_values = true)]
     pub between: Option<Bracket>,
@@ -48,13 +43,10 @@ fn parse_bracket(text: &str) -> Result<Bracket, String> {
 
 pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure> {
     let settings = arguments.scenario.load(common)?;
-    let prediction = match arguments.query() {
-        None => predict(&settings),
-        Some(query) => predict_with_critical(&settings, &query, |value| {
-            let mut overrides = common.overrides();
-            overrides.extend(query.keys.iter().map(|key| Override::number(key, value)));
-            Settings::load(&arguments.scenario.path, &overrides)
-        })?,
+    let prediction = if arguments.critical.is_empty() {
+        predict(&settings)
+    } else {
+        with_critical(arguments, common, &settings)?
     };
     if common.json {
         return print_json(&prediction);
@@ -62,77 +54,100 @@ pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure>
     Ok(print(&render(&prediction))?)
 }
 
-impl Arguments {
-    fn query(&self) -> Option<CriticalQuery> {
-        let Bracket { low, high } = self.between.unwrap_or(DEFAULT_BRACKET);
-        (!self.critical.is_empty()).then(|| CriticalQuery {
-            keys: self.critical.clone(),
-            low,
-            high,
+fn with_critical(
+    arguments: &Arguments,
+    common: &Common,
+    settings: &Settings,
+) -> Result<Prediction, Failure> {
+    let text = arguments.scenario.text()?;
+    let keys = &arguments.critical;
+    let Bracket { low, high } = bracket(arguments, settings)?;
+    let query = CriticalQuery { keys: keys.clone(), low, high };
+    let settings_at = |value| {
+        let moved = keys.iter().map(|key| Override::number("--critical", key, value));
+        let overrides: Vec<_> = common.overrides().into_iter().chain(moved).collect();
+        Settings::from_toml_str(&arguments.scenario.name(), &text, &overrides)
+    };
+    Ok(predict_with_critical(settings, &query, settings_at)?)
+}
+
+/// Where to look: as asked for, else from a quarter to four times the first key's value.
+fn bracket(arguments: &Arguments, settings: &Settings) -> Result<Bracket, Failure> {
+    let numbers = settings.spelled_out().into_iter();
+    let numbers: Vec<_> =
+        numbers.filter_map(|(path, value)| Some((path, value.as_float()?))).collect();
+    let value_of = |key: &String| {
+        let value = numbers.iter().find(|(path, _)| path == key).map(|(_, value)| *value);
+        value.ok_or_else(|| Failure::NoCriticalKey {
+            key: key.clone(),
+            nearest: nearest(key, numbers.iter().map(|(path, _)| *path)),
         })
+    };
+    let values = arguments.critical.iter().map(value_of).collect::<Result<Vec<_>, _>>()?;
+    match (arguments.between, arguments.critical.first(), values.first()) {
+        (Some(bracket), _, _) => Ok(bracket),
+        (None, _, Some(value)) if *value > 0.0 => {
+            Ok(Bracket { low: value / 4.0, high: 4.0 * value })
+        }
+        (None, key, value) => Err(Failure::NoBracket {
+            key: key.cloned().unwrap_or_default(),
+            value: value.copied().unwrap_or_default(),
+        }),
     }
 }
 
-/// The prediction as text to read.
+/// The prediction as a list to read.
 fn render(prediction: &Prediction) -> String {
-    let Prediction { title, generalist, cues, best, verdict, critical } = prediction;
-    let mut text = format!("{title}\n\n");
-    let mut line = |name: &str, value: String| {
+    let mut text = format!("{}\n\n", prediction.title);
+    for (name, value) in rows(prediction) {
         // Writing to a string cannot fail.
-        let _ = writeln!(text, "{name:<22} {value}");
-    };
-    line("verdict", verdict.to_string());
-    line(
-        "generalist optimum",
-        format!(
-            "soma share {:.4}, {} propagules per founder (R0)",
-            generalist.soma_share,
-            number(generalist.r0)
-        ),
-    );
-    for CuePart { cue, gradient, curvature, verdict } in cues {
-        let (gradient, curvature) = (number(*gradient), number(*curvature));
-        line(
-            &format!("cue {cue}"),
-            format!("{verdict} (d ln R0/dg {gradient}, d2 ln R0/dg2 {curvature})"),
-        );
+        let _ = writeln!(text, "{name:<26} {value}");
     }
-    line(
-        "best programme",
-        format!(
-            "{}, division index {:.3}, soma cells {:.1} %, {} propagules per founder (R0)",
-            best.class,
-            best.division_index,
-            100.0 * best.soma_fraction,
-            number(best.r0)
-        ),
-    );
-    let traits: Vec<String> =
-        best.traits.iter().map(|(name, value)| format!("{name} {value:.3}")).collect();
-    line("  its traits (logits)", traits.join(", "));
-    if let Some(critical) = critical {
-        line(
-            &format!("critical {}", critical.keys.join(", ")),
-            format!(
-                "local {}, global {} (null: no change in the bracket)",
-                exact(critical.local),
-                exact(critical.global)
-            ),
-        );
-    }
-    text.push_str(
-        "\nTheory assumes a large population at demographic balance; numbers are computed, not \
-         estimated.\n",
-    );
     text
 }
 
-fn number(value: Option<f64>) -> String {
-    value.map_or_else(|| "null".to_owned(), |value| format!("{value:.4}"))
+fn rows(prediction: &Prediction) -> Vec<(String, String)> {
+    let Prediction { generalist, best, .. } = prediction;
+    let row = |name: &str, value: String| (name.to_owned(), value);
+    let mut rows = vec![
+        row("verdict", prediction.verdict.to_string()),
+        row("generalist soma share", format!("{:.4}", generalist.soma_share)),
+        row("generalist R0", format!("{} propagules", number(generalist.r0))),
+    ];
+    for cue in &prediction.cues {
+        let (gradient, curvature) = (number(cue.gradient), number(cue.curvature));
+        let pull = format!("{} (gradient {gradient}, curvature {curvature})", cue.verdict);
+        rows.push((format!("cue {}", cue.cue), pull));
+    }
+    let gain = best.r0.zip(generalist.r0).filter(|(_, before)| *before > 0.0);
+    let gain = gain.map(|(after, before)| format!(" ({:+.2} %)", 100.0 * (after / before - 1.0)));
+    let best_r0 = format!("{} propagules{}", number(best.r0), gain.unwrap_or_default());
+    rows.extend([
+        row("best programme R0", best_r0),
+        row("best division index", format!("{:.4}", best.division_index)),
+        row("best soma fraction", format!("{:.4}", best.soma_fraction)),
+        row("best class", best.class.to_string()),
+    ]);
+    for (name, value) in &best.traits {
+        rows.push((format!("best {name}"), format!("{value:.3}")));
+    }
+    if let Some(critical) = &prediction.critical {
+        let (local, global) = (place(critical.local), place(critical.global));
+        rows.push(row("critical value of", critical.keys.join(", ")));
+        rows.extend([
+            row("  local verdict changes", local),
+            row("  global verdict changes", global),
+        ]);
+    }
+    rows
 }
 
-fn exact(value: Option<f64>) -> String {
-    value.map_or_else(|| "null".to_owned(), |value| format!("{value:.9}"))
+fn place(value: Option<f64>) -> String {
+    value.map_or_else(|| "nowhere in the bracket".to_owned(), |value| format!("at {value:.6}"))
+}
+
+fn number(value: Option<f64>) -> String {
+    value.map_or_else(|| "none".to_owned(), |value| format!("{value:.4}"))
 }
 
 #[cfg(test)]

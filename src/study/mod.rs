@@ -8,5 +8,6 @@ pub mod prediction;
 pub mod run;
 mod start;
 
+pub use outlook::Outlook;
 pub use prediction::Prediction;
 pub use start::start;

@@ -141,7 +141,17 @@ pub fn generalist_of(settings: &Settings) -> Generalist {
 /// What theory needs of a scenario.
 #[must_use]
 pub fn model(settings: &Settings) -> Model {
-    let life = LifeHistory {
+    let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
+    let cues = settings.traits.cues;
+    Model::new(life_history(settings), returns, cues, &compositions(settings))
+        .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
+        .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
+}
+
+/// The life of a scenario's colonies.
+#[must_use]
+pub fn life_history(settings: &Settings) -> LifeHistory {
+    LifeHistory {
         propagule_cells: settings.life.propagule_cells as u64,
         adult_cells: settings.body.adult_cells as u64,
         propagule_cost_eu: settings.life.propagule_cost_eu,
@@ -152,11 +162,7 @@ pub fn model(settings: &Settings) -> Model {
         upkeep_eu_per_h: settings.budget.upkeep_eu_per_h,
         division_cost_eu: settings.budget.division_cost_eu,
         cost_per_unit: settings.traits.cost_per_unit,
-    };
-    let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
-    Model::new(life, returns, settings.traits.cues, &compositions(settings))
-        .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
-        .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
+    }
 }
 
 /// Cells grown in all to learn what bodies are like, where chance decides it.
