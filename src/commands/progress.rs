@@ -79,6 +79,7 @@ impl Progress {
 
     fn note(&self, replicate: u32, generation: f64) {
         let mut state = self.state();
+        #[expect(clippy::cast_sign_loss, reason = "generations are counted up from 0")]
         let reached = (generation as u64).min(self.generations);
         state.reached.insert(replicate, reached);
         match &self.display {
@@ -92,12 +93,11 @@ impl Progress {
                     .or_insert_with(|| all.add(self.replicate_bar(replicate)));
                 bar.set_position(reached);
             }
-            Some(Display::Lines) => {
-                if state.last_line.elapsed() >= PLAIN_LINE_EVERY {
-                    state.last_line = Instant::now();
-                    self.say(&state);
-                }
+            Some(Display::Lines) if state.last_line.elapsed() >= PLAIN_LINE_EVERY => {
+                state.last_line = Instant::now();
+                self.say(&state);
             }
+            Some(Display::Lines) => {}
         }
     }
 
