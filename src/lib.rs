@@ -4,7 +4,10 @@
 //! [`theory`], [`tissue`], [`stats`], [`scenario`], [`world`], [`record`], [`evolution`],
 //! [`study`], [`report`], [`commands`].
 
+pub mod commands;
+pub mod record;
 pub mod scenario;
+pub mod stats;
 pub mod study;
 pub mod theory;
 pub mod tissue;

@@ -76,11 +76,11 @@ pub enum Plan {
 pub struct Life {
     /// Cells of a propagule.
     pub propagule_cells: usize,
-    /// Cost of a propagule (c_p), eu.
+    /// Cost of a propagule (`c_p`), eu.
     pub propagule_cost_eu: f64,
     /// Hazard of an adult colony of unit viability (m0), 1/h.
     pub adult_hazard_per_h: f64,
-    /// Hazard no viability lowers (m_ext), 1/h.
+    /// Hazard no viability lowers (`m_ext`), 1/h.
     pub extrinsic_hazard_per_h: f64,
     /// Hazard of a growing colony, 1/h.
     pub juvenile_hazard_per_h: f64,
@@ -121,7 +121,7 @@ pub struct Traits {
     pub mutation_probability: f64,
     /// Standard deviation of a mutation's step.
     pub mutation_sd: f64,
-    /// Bound of g0 and of every g_k: traits stay within +-bound.
+    /// Bound of g0 and of every `g_k`: traits stay within +-bound.
     pub bound: f64,
     /// Share of a cell's income lost per unit of summed responsiveness.
     pub cost_per_unit: f64,

@@ -1,5 +1,6 @@
-//! Whole studies of a scenario.
+//! What is asked of a scenario as a whole.
 
+pub mod outlook;
 pub mod prediction;
 
 pub use prediction::Prediction;

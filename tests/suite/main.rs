@@ -1,5 +1,20 @@
-//! Checks of the whole library against outside values.
+//! Checks of the library against values from outside it, one file per subject.
 
+mod command_fixture;
+mod command_output;
+mod command_wrong_scenario;
+mod record_folder;
+mod record_run;
+mod record_sample;
+mod record_summary;
+mod scenario_overrides;
+mod scenario_properties;
+mod scenario_settings;
+mod scenario_templates;
+mod stats_binomial;
+mod stats_division_of_labour;
+mod stats_mean;
+mod stats_survival;
 mod theory_best;
 mod theory_critical;
 mod theory_fitness;

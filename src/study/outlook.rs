@@ -1,0 +1,210 @@
+//! What follows from a scenario before anything is simulated: the `check` command's document.
+
+use serde::Serialize;
+
+use crate::scenario::Settings;
+use crate::theory::{Cue, TaskReturn};
+
+mod ball;
+mod selection;
+mod warning;
+
+pub use selection::{Pull, Selection};
+pub use warning::{Advice, Warning};
+
+/// Cell lives per second and thread that a run is assumed to reach, 1/s.
+const CELL_LIVES_PER_SECOND: f64 = 1e7;
+
+/// Memory that a cell is assumed to take, its colony's share included, bytes.
+const BYTES_PER_CELL: f64 = 64.0;
+
+/// What follows from a scenario.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Outlook {
+    /// The scenario's title.
+    pub title: String,
+    /// The adult body.
+    pub body: BodyOutlook,
+    /// Supply by diffusion; null where every cell is fully fed.
+    pub transport: Option<TransportOutlook>,
+    /// Sharing of support; null where support is pooled.
+    pub support: Option<SupportOutlook>,
+    /// Times of the generalist's life.
+    pub time: TimeOutlook,
+    /// Mutations expected among the settlers of one generation, `N * traits * mu`.
+    pub mutations_per_generation: f64,
+    /// What a run is expected to take.
+    pub cost: Cost,
+    /// What may disappoint, each with a remedy.
+    pub warnings: Vec<Advice>,
+}
+
+/// The adult body.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct BodyOutlook {
+    /// Cells of an adult colony (n).
+    pub cells: usize,
+    /// Radius of the ball of the body's volume, um: `(3 n d^3 / (4 pi sqrt 2))^(1/3)`.
+    pub radius_um: f64,
+    /// Share of cells without an empty neighbour site, in [0, 1].
+    pub interior_share: f64,
+}
+
+/// Supply by diffusion.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct TransportOutlook {
+    /// Thiele modulus of the body, `R sqrt(k/D)`.
+    pub thiele_modulus: f64,
+    /// Share of the income that diffusion costs, in [0, 1].
+    pub income_lost_share: f64,
+    /// Cells of the largest body without starved cells.
+    pub largest_fed_cells: u64,
+}
+
+/// Sharing of support.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct SupportOutlook {
+    /// Range of sharing over the body's radius.
+    pub range_over_radius: f64,
+}
+
+/// Times of the generalist's life.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct TimeOutlook {
+    /// From founding to adulthood, h.
+    pub growth_h: f64,
+    /// Mean age of a parent at the birth of a propagule, h.
+    pub generation_h: f64,
+}
+
+/// What a run is expected to take.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Cost {
+    /// Cells that will be born, one growth of every site per generation and replicate.
+    pub cell_lives: f64,
+    /// Time at 10 million cell lives per second and thread, s.
+    pub seconds: f64,
+    /// Memory for the cells of the replicates that run at once, bytes.
+    pub bytes: f64,
+}
+
+impl Outlook {
+    /// What follows from `settings`, given what theory says of the generalist and how many
+    /// threads a run will have.
+    #[must_use]
+    pub fn of(settings: &Settings, selection: &Selection, threads: usize) -> Self {
+        let body = body(settings);
+        let time = time(settings, selection.soma_share, body.interior_share);
+        let warnings = warning::warnings(settings, &body, selection);
+        Self {
+            title: settings.title.clone(),
+            transport: None,
+            support: None,
+            time,
+            mutations_per_generation: mutations_per_generation(settings),
+            cost: cost(settings, threads),
+            warnings: warnings.iter().map(Warning::advice).collect(),
+            body,
+        }
+    }
+}
+
+fn body(settings: &Settings) -> BodyOutlook {
+    let cells = settings.body.adult_cells;
+    BodyOutlook {
+        cells,
+        radius_um: body_radius_um(cells, settings.body.cell_diameter_um),
+        interior_share: interior_share(cells),
+    }
+}
+
+/// Radius of the ball that has the volume of `cells` lattice sites, um, for cells `d` um apart:
+/// `(3 n d^3 / (4 pi sqrt 2))^(1/3)`, as a site of the face-centred cubic lattice has the volume
+/// `d^3 / sqrt 2`.
+#[must_use]
+pub fn body_radius_um(cells: usize, d: f64) -> f64 {
+    let volume = cells as f64 / std::f64::consts::SQRT_2;
+    d * libm::cbrt(3.0 * volume / (4.0 * std::f64::consts::PI))
+}
+
+/// Share of interior cells of a compact body: the one place that says how bodies lie.
+fn interior_share(cells: usize) -> f64 {
+    ball::interior_share(cells)
+}
+
+/// Hours from founding to adulthood, `ceil(log2(n/p)) * cost / (income - upkeep)`: cells start
+/// without reserve and divide together, the last round as far as it is needed. Where division
+/// costs vary this is a round number, not a mean.
+#[must_use]
+pub fn growth_h(settings: &Settings) -> f64 {
+    let (n, p) = (settings.body.adult_cells, settings.life.propagule_cells.max(1));
+    let mut rounds = 0_u32;
+    let mut cells = p;
+    while cells < n {
+        cells = cells.saturating_mul(2);
+        rounds += 1;
+    }
+    let budget = &settings.budget;
+    f64::from(rounds) * budget.division_cost_eu / (budget.income_eu_per_h - budget.upkeep_eu_per_h)
+}
+
+/// Hazard `m_ext + m0 / V` of an adult generalist of soma share `z`, 1/h; infinite at V = 0.
+fn generalist_hazard_per_h(settings: &Settings, z: f64, interior_share: f64) -> f64 {
+    let task = &settings.returns.viability;
+    let viability = mean_effect(task, interior_share) * task.curve.value(z);
+    settings.life.extrinsic_hazard_per_h + settings.life.adult_hazard_per_h / viability
+}
+
+/// Propagules that a founder whose cells all have soma share `z` leaves,
+/// `R0 = exp(-m_j growth_h) F / (c_p m)` with `F = n k b(1 - z) e0`.
+fn generalist_r0(settings: &Settings, z: f64) -> f64 {
+    let life = &settings.life;
+    let inside = interior_share(settings.body.adult_cells);
+    let fecundity = &settings.returns.fecundity;
+    let rate = settings.body.adult_cells as f64
+        * mean_effect(fecundity, inside)
+        * fecundity.curve.value(1.0 - z)
+        * settings.budget.income_eu_per_h;
+    let hazard = generalist_hazard_per_h(settings, z, inside);
+    let adulthood = libm::exp(-life.juvenile_hazard_per_h * growth_h(settings));
+    adulthood * rate / (life.propagule_cost_eu * hazard)
+}
+
+fn mean_effect(task: &TaskReturn, interior_share: f64) -> f64 {
+    (1.0 - interior_share) * task.surface_effect + interior_share * task.interior_effect
+}
+
+/// At a steady rate of propagules and a constant hazard m, parents are on average `1/m` into
+/// adulthood.
+fn time(settings: &Settings, soma_share: f64, interior_share: f64) -> TimeOutlook {
+    let growth_h = growth_h(settings);
+    let hazard = generalist_hazard_per_h(settings, soma_share, interior_share);
+    TimeOutlook { growth_h, generation_h: growth_h + 1.0 / hazard }
+}
+
+/// Heritable traits of a scenario: the baseline, one responsiveness per cue, and noise's bias.
+#[must_use]
+pub fn heritable_traits(settings: &Settings) -> usize {
+    let cues = settings.traits.cues;
+    1 + cues.iter().count() + usize::from(cues.contains(Cue::Noise))
+}
+
+fn mutations_per_generation(settings: &Settings) -> f64 {
+    let traits = heritable_traits(settings);
+    settings.habitat.sites as f64 * traits as f64 * settings.traits.mutation_probability
+}
+
+fn cost(settings: &Settings, threads: usize) -> Cost {
+    let cells = settings.habitat.sites as f64 * settings.body.adult_cells as f64;
+    let replicates = f64::from(settings.run.replicates);
+    let at_once = replicates.min(threads.max(1) as f64);
+    let cell_lives = cells * settings.run.generations as f64 * replicates;
+    Cost {
+        cell_lives,
+        seconds: cell_lives / (CELL_LIVES_PER_SECOND * at_once),
+        bytes: cells * BYTES_PER_CELL * at_once,
+    }
+}
+
+#[cfg(test)]
+mod tests;

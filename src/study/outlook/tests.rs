@@ -1,0 +1,99 @@
+use approx::assert_relative_eq;
+
+use super::*;
+use crate::scenario::Override;
+
+fn settings(overrides: &[&str]) -> Settings {
+    let overrides: Vec<_> = overrides.iter().map(|text| Override::set(*text)).collect();
+    Settings::from_toml_str("test", "title = 'pond'", &overrides).expect("sound overrides")
+}
+
+fn selection(r0: f64, pulls: &[Pull]) -> Selection {
+    Selection { soma_share: 0.5, r0, pulls: pulls.to_vec() }
+}
+
+fn names(settings: &Settings, selection: &Selection) -> Vec<&'static str> {
+    let outlook = Outlook::of(settings, selection, 1);
+    outlook.warnings.iter().map(|advice| advice.name).collect()
+}
+
+/// Sites that fill balls of the lattice (OEIS A119869): 1, 13, 19, 43, 55.
+#[test]
+fn interior_cells_of_whole_balls() {
+    // 13: the centre alone has all twelve neighbours. 55 = 1 + 12 + 6 + 24 + 12 sites: the
+    // neighbours of the inner 13 are within distance^2 4 of the centre, so 13 are interior.
+    assert_relative_eq!(interior_share(12), 0.0);
+    assert_relative_eq!(interior_share(13), 1.0 / 13.0);
+    assert_relative_eq!(interior_share(55), 13.0 / 55.0);
+    assert_relative_eq!(interior_share(1), 0.0);
+}
+
+#[test]
+fn radius_is_that_of_the_volume() {
+    // pi / sqrt 18 of the volume is filled by spheres of diameter d: n spheres of diameter d
+    // have the volume of the body times the packing fraction.
+    let (n, d) = (100_000_usize, 10.0);
+    let filled = std::f64::consts::PI / 18_f64.sqrt();
+    let expected = 0.5 * d * (n as f64 / filled).cbrt();
+    assert_relative_eq!(body_radius_um(n, d), expected, max_relative = 1e-12);
+}
+
+#[test]
+fn times_follow_the_life_cycle() {
+    // 64 cells from 1: six rounds of 8 h. Best generalist of linear returns: z = 1/2, V = 1/2,
+    // hazard 0.01 per h.
+    let outlook = Outlook::of(&settings(&[]), &selection(400.0, &[]), 1);
+    assert_relative_eq!(outlook.time.growth_h, 48.0);
+    assert_relative_eq!(outlook.time.generation_h, 148.0);
+    let sized = |n: &str, p: &str| growth_h(&settings(&[n, p]));
+    assert_relative_eq!(sized("body.adult_cells=65", "life.propagule_cells=1"), 56.0);
+    assert_relative_eq!(sized("body.adult_cells=64", "life.propagule_cells=64"), 0.0);
+    assert_relative_eq!(sized("body.adult_cells=9", "life.propagule_cells=4"), 16.0);
+}
+
+#[test]
+fn supply_and_cost_are_products() {
+    let outlook = Outlook::of(&settings(&["run.generations=100"]), &selection(9.0, &[]), 2);
+    // Baseline, noise and its bias, each 256 x 0.1.
+    assert_relative_eq!(outlook.mutations_per_generation, 76.8);
+    assert_relative_eq!(outlook.cost.cell_lives, 256.0 * 64.0 * 100.0 * 8.0);
+    assert_relative_eq!(outlook.cost.seconds, outlook.cost.cell_lives / 2e7);
+}
+
+#[test]
+fn warnings_name_what_will_disappoint() {
+    let calm = settings(&["body.adult_cells=100000", "habitat.sites=256"]);
+    assert!(names(&calm, &selection(5.0, &[])).is_empty());
+    assert_eq!(
+        names(&settings(&["body.adult_cells=8", "traits.cues=['exposure']"]), &selection(5.0, &[])),
+        ["no-interior-cell", "cue-cannot-vary", "small-body"]
+    );
+    assert_eq!(
+        names(&settings(&[]), &selection(1.0, &[])),
+        ["small-body", "generalist-cannot-persist"]
+    );
+    let short = settings(&["run.generations=20"]);
+    assert_eq!(names(&short, &selection(5.0, &[])), ["small-body", "onset-cannot-be-confirmed"]);
+}
+
+#[test]
+fn drift_and_time_are_weighed_only_where_a_cue_is_favoured() {
+    let pull =
+        |gradient, curvature, favoured| Pull { cue: Cue::Noise, gradient, curvature, favoured };
+    let weigh = |pull| names(&settings(&[]), &selection(5.0, &[pull]));
+    assert_eq!(weigh(pull(0.0, -1.0, false)), ["small-body"]);
+    assert_eq!(weigh(pull(0.0, 1e-3, true)), ["small-body", "drift-dominates"]);
+    assert_eq!(weigh(pull(0.0, 0.5, true)), ["small-body"]);
+    let slow = settings(&["traits.mutation_probability=0.0001"]);
+    let names = names(&slow, &selection(5.0, &[pull(0.0, 0.5, true)]));
+    assert_eq!(names, ["small-body", "too-few-generations"]);
+}
+
+#[test]
+fn growth_towards_a_goal_solves_its_equation() {
+    // Gradient alone: distance over speed. Curvature alone: ln(goal/start) / (rate curvature).
+    let pull = |gradient, curvature| Pull { cue: Cue::Noise, gradient, curvature, favoured: true };
+    assert_relative_eq!(pull(0.5, 0.0).generations(0.0, 2.0, 0.1), 40.0);
+    let expected = 10_f64.ln() / 0.05;
+    assert_relative_eq!(pull(0.0, 0.5).generations(0.2, 2.0, 0.1), expected, max_relative = 1e-12);
+}
