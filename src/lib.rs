@@ -5,7 +5,9 @@
 //! [`study`], [`report`], [`commands`].
 
 pub mod commands;
+pub mod evolution;
 pub mod record;
+pub mod report;
 pub mod scenario;
 pub mod stats;
 pub mod study;

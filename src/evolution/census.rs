@@ -6,8 +6,8 @@ use ndarray::{Array2, Axis};
 
 use crate::record::{CensusRow, TRAITS};
 use crate::scenario::settings::Onset;
-use crate::stats::division_of_labour;
-use crate::theory::{BodyClass, Cue, Programme, division_index};
+use crate::stats::MutualEntropy;
+use crate::theory::{BodyClass, Programme, division_index};
 use crate::world::components::SomaShare;
 use crate::world::{ColonyView, Population};
 
@@ -122,12 +122,14 @@ fn mutual_entropy(shares: &[SomaShare]) -> f64 {
         let z = f64::from(shares[cell].0);
         if task == 0 { z } else { 1.0 - z }
     });
-    division_of_labour(table.view()).over_task_entropy
+    // Shares lie in [0, 1], so the table is never refused.
+    MutualEntropy::of(&table.view()).map_or(0.0, |entropy| entropy.over_tasks())
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::theory::Cue;
 
     #[test]
     fn traits_stand_in_the_order_of_their_columns() {

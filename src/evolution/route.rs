@@ -37,9 +37,7 @@ fn contributions(body: &ColonyView<'_>, cue: Cue) -> Vec<f64> {
     match cue {
         Cue::Noise => cells.map(|i| weight * f64::from(body.noise[i].0)).collect(),
         Cue::Lineage => cells.map(|i| weight * f64::from(body.labels[i].0)).collect(),
-        Cue::Exposure => {
-            cells.map(|i| weight * f64::from(u8::from(body.exposed[i].0))).collect()
-        }
+        Cue::Exposure => cells.map(|i| weight * f64::from(u8::from(body.exposed[i].0))).collect(),
         // Every cell is fully fed: incomes do not differ.
         Cue::Income => vec![0.0; body.shares.len()],
     }

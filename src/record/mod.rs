@@ -21,9 +21,9 @@ pub use census::{CensusRow, TRAITS};
 pub use error::{Fault, RecordError};
 pub use folder::{RunFolder, RunIdentity};
 pub use manifest::{FileEntry, Machine, Manifest};
-pub use replicates::{BodyClass, Outcome, ReplicateRow, Route};
+pub use replicates::{Outcome, ReplicateRow};
 pub use run::{Ending, ReplicateRecord, RunRecorder};
-pub use summary::{Prediction, Summary, Throughput, Verdict};
+pub use summary::{Prediction, Summary, Throughput};
 pub use table::read_table;
 
 /// Program name and version, as every file states it.

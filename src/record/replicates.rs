@@ -5,6 +5,7 @@ use std::path::Path;
 use serde::{Deserialize, Serialize};
 
 use super::RecordError;
+use crate::theory::{BodyClass, Cue};
 
 /// How a replicate ended.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
@@ -16,63 +17,6 @@ pub enum Outcome {
     Censored,
     /// It died out.
     Extinct,
-}
-
-/// How far the bodies of a population are differentiated.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize)]
-#[serde(rename_all = "snake_case")]
-pub enum BodyClass {
-    /// All cells alike.
-    Alike,
-    /// Soma or germ beside generalists.
-    Partial,
-    /// Germ and soma.
-    Complete,
-}
-
-impl BodyClass {
-    /// All classes, from the least to the most differentiated.
-    pub const ALL: [Self; 3] = [Self::Alike, Self::Partial, Self::Complete];
-
-    /// The class's word in tables and reports.
-    #[must_use]
-    pub const fn name(self) -> &'static str {
-        match self {
-            Self::Alike => "alike",
-            Self::Partial => "partial",
-            Self::Complete => "complete",
-        }
-    }
-}
-
-/// The cue by which cells come to differ.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize)]
-#[serde(rename_all = "snake_case")]
-pub enum Route {
-    /// Independent random fate.
-    Noise,
-    /// Asymmetric division.
-    Lineage,
-    /// Position at the surface.
-    Exposure,
-    /// Position felt through food.
-    Income,
-}
-
-impl Route {
-    /// All routes, in the order of the columns.
-    pub const ALL: [Self; 4] = [Self::Noise, Self::Lineage, Self::Exposure, Self::Income];
-
-    /// The route's word in tables and reports.
-    #[must_use]
-    pub const fn name(self) -> &'static str {
-        match self {
-            Self::Noise => "noise",
-            Self::Lineage => "lineage",
-            Self::Exposure => "exposure",
-            Self::Income => "income",
-        }
-    }
 }
 
 /// What became of one replicate. Fields are the columns of `replicates.csv`, in its order; `None`
@@ -126,11 +70,11 @@ const COLUMNS: [&str; 13] = [
 
 impl ReplicateRow {
     /// The cue that explains the largest share of the difference between cells; of equal shares
-    /// the first in [`Route::ALL`], `None` if no share is known and above 0.
+    /// the first in [`Cue::ALL`], `None` if no share is known and above 0.
     #[must_use]
-    pub fn route(&self) -> Option<Route> {
+    pub fn route(&self) -> Option<Cue> {
         let shares = [self.route_noise, self.route_lineage, self.route_exposure, self.route_income];
-        Route::ALL
+        Cue::ALL
             .into_iter()
             .zip(shares)
             .filter_map(|(route, share)| Some((route, share.filter(|share| *share > 0.0)?)))
@@ -209,8 +153,8 @@ mod tests {
 
     #[test]
     fn the_route_is_the_cue_with_the_largest_share() {
-        assert_eq!(row([Some(0.2), None, Some(0.8), None]).route(), Some(Route::Exposure));
-        assert_eq!(row([Some(0.5), Some(0.5), None, None]).route(), Some(Route::Noise));
+        assert_eq!(row([Some(0.2), None, Some(0.8), None]).route(), Some(Cue::Exposure));
+        assert_eq!(row([Some(0.5), Some(0.5), None, None]).route(), Some(Cue::Noise));
         assert_eq!(row([Some(0.0), None, None, None]).route(), None);
         assert_eq!(row([None; 4]).route(), None);
     }

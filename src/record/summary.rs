@@ -5,8 +5,9 @@ use std::path::Path;
 use serde::{Deserialize, Serialize};
 
 use super::manifest::read_json;
-use super::{BodyClass, Outcome, RecordError, ReplicateRow, Route, file_name};
+use super::{Outcome, RecordError, ReplicateRow, file_name};
 use crate::stats::{self, KaplanMeier, Level, MeanEstimate, Observation, StatsError};
+use crate::theory::{BodyClass, Cue, Verdict};
 
 /// The answer of a run.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
@@ -60,8 +61,8 @@ pub struct FinalSummary {
     pub soma_fraction: Option<f64>,
     /// Commonest class of bodies; of equally common ones the least differentiated.
     pub class: Option<BodyClass>,
-    /// Commonest route; of equally common ones the first in [`Route::ALL`].
-    pub route: Option<Route>,
+    /// Commonest route; of equally common ones the first in [`Cue::ALL`].
+    pub route: Option<Cue>,
 }
 
 /// What theory said of the scenario.
@@ -71,45 +72,6 @@ pub struct Prediction {
     pub verdict: Verdict,
     /// Class of the best programme.
     pub class: BodyClass,
-}
-
-/// Theory's overall verdict on differentiation.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
-pub enum Verdict {
-    /// Selection has a slope towards it at the generalist.
-    #[serde(rename = "favoured at once")]
-    AtOnce,
-    /// Selection is disruptive at the generalist.
-    #[serde(rename = "favoured by disruption")]
-    ByDisruption,
-    /// The generalist resists it.
-    #[serde(rename = "not favoured locally")]
-    NotLocally,
-    /// The generalist resists it, yet a differentiated programme does better.
-    #[serde(rename = "valley")]
-    Valley,
-}
-
-impl Verdict {
-    /// All verdicts.
-    pub const ALL: [Self; 4] = [Self::AtOnce, Self::ByDisruption, Self::NotLocally, Self::Valley];
-
-    /// The verdict's words in documents and reports.
-    #[must_use]
-    pub const fn name(self) -> &'static str {
-        match self {
-            Self::AtOnce => "favoured at once",
-            Self::ByDisruption => "favoured by disruption",
-            Self::NotLocally => "not favoured locally",
-            Self::Valley => "valley",
-        }
-    }
-
-    /// The verdict of those words, if there is one.
-    #[must_use]
-    pub fn from_name(name: &str) -> Option<Self> {
-        Self::ALL.into_iter().find(|verdict| verdict.name() == name)
-    }
 }
 
 /// How much was computed in which time. Differs from run to run.
@@ -210,7 +172,7 @@ impl FinalSummary {
             division_index_high: interval.map(|interval| interval.high),
             soma_fraction: mean(|row| row.soma_fraction)?.map(|share| share.mean),
             class: commonest(&BodyClass::ALL, alive().filter_map(|row| row.class)),
-            route: commonest(&Route::ALL, alive().filter_map(ReplicateRow::route)),
+            route: commonest(&Cue::ALL, alive().filter_map(ReplicateRow::route)),
         })
     }
 }

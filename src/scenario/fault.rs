@@ -218,6 +218,12 @@ pub enum PointsProblem {
         /// Place in the list, from 1.
         number: usize,
     },
+    /// The curve refuses them for a reason of its own.
+    #[error("{reason}")]
+    Refused {
+        /// The reason, in words.
+        reason: String,
+    },
     /// y falls.
     #[error("the y of point {number} must not be less than that of the point before it")]
     YFalling {

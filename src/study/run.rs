@@ -103,8 +103,7 @@ impl Replicates<'_> {
         broken: &AtomicBool,
         cell_lives: &AtomicU64,
     ) -> Option<ReplicateRecord> {
-        let stopped =
-            || self.stop.load(Ordering::Relaxed) || broken.load(Ordering::Relaxed);
+        let stopped = || self.stop.load(Ordering::Relaxed) || broken.load(Ordering::Relaxed);
         if stopped() {
             return None;
         }

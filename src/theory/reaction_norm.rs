@@ -4,8 +4,11 @@
 
 use std::fmt;
 
+use serde::{Deserialize, Serialize};
+
 /// What a cell can read about its place, its descent or its luck.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case")]
 pub enum Cue {
     /// An independent random draw per cell: +1 with probability `sigmoid(bias)`, else -1.
     Noise,

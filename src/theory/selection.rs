@@ -2,6 +2,8 @@
 
 use std::fmt;
 
+use serde::{Deserialize, Serialize};
+
 use super::fitness::{Model, Norm};
 use super::generalist::Generalist;
 use super::jet::{Jet, Scalar};
@@ -11,20 +13,34 @@ use super::reaction_norm::Cue;
 pub const SELECTION_TOLERANCE: f64 = 1e-9;
 
 /// What theory says of a cue, or of all of them.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Serialize, Deserialize)]
 pub enum Verdict {
     /// A little responsiveness is better at first order.
+    #[serde(rename = "favoured at once")]
     FavouredAtOnce,
     /// A little responsiveness is better at second order: selection is disruptive.
+    #[serde(rename = "favoured by disruption")]
     FavouredByDisruption,
     /// A little responsiveness is no better.
+    #[serde(rename = "not favoured locally")]
     NotFavouredLocally,
     /// A little is no better, but much of it is: the generalist is locally stable, and a
     /// differentiated programme does better.
+    #[serde(rename = "valley")]
     Valley,
 }
 
 impl Verdict {
+    /// All verdicts.
+    pub const ALL: [Self; 4] =
+        [Self::FavouredAtOnce, Self::FavouredByDisruption, Self::NotFavouredLocally, Self::Valley];
+
+    /// The verdict of those words, if there is one.
+    #[must_use]
+    pub fn from_name(name: &str) -> Option<Self> {
+        Self::ALL.into_iter().find(|verdict| verdict.name() == name)
+    }
+
     /// The verdict in words.
     #[must_use]
     pub const fn name(self) -> &'static str {

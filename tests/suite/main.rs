@@ -1,4 +1,4 @@
-//! Checks of the library against values from outside it, one file per subject.
+//! Checks of the library and the program against values from outside, one file per subject.
 
 mod command_fixture;
 mod command_output;
@@ -7,6 +7,8 @@ mod record_folder;
 mod record_run;
 mod record_sample;
 mod record_summary;
+mod report_agreement;
+mod report_screen;
 mod scenario_overrides;
 mod scenario_properties;
 mod scenario_settings;

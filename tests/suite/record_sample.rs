@@ -1,9 +1,10 @@
 //! Invented rows for the checks of records and reports.
 
 use somadawn::record::{
-    BodyClass, BodyRow, CensusRow, Ending, Outcome, Prediction, ReplicateRecord, ReplicateRow,
-    RunIdentity, Stage, Throughput, Verdict,
+    BodyRow, CensusRow, Ending, Outcome, Prediction, ReplicateRecord, ReplicateRow, RunIdentity,
+    Stage, Throughput,
 };
+use somadawn::theory::{BodyClass, Verdict};
 
 pub(crate) const SCENARIO: &str = "title = \"Lantern algae\"\nseed = 7\n";
 
@@ -110,7 +111,7 @@ pub(crate) fn record(row: ReplicateRow) -> ReplicateRecord {
 }
 
 pub(crate) fn prediction() -> Prediction {
-    Prediction { verdict: Verdict::ByDisruption, class: BodyClass::Complete }
+    Prediction { verdict: Verdict::FavouredByDisruption, class: BodyClass::Complete }
 }
 
 pub(crate) fn ending(replicates: u32) -> Ending {

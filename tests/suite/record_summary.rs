@@ -3,7 +3,8 @@
 use approx::assert_abs_diff_eq;
 use serde_json::{Value, json};
 
-use somadawn::record::{BodyClass, Outcome, ReplicateRow, Route, Summary, Throughput, Verdict};
+use somadawn::record::{Outcome, ReplicateRow, Summary, Throughput};
+use somadawn::theory::{BodyClass, Cue, Verdict};
 
 use crate::record_sample::{censored, extinct, onset, prediction};
 
@@ -41,7 +42,7 @@ fn the_end_is_told_of_those_that_live() {
     assert_abs_diff_eq!(found.division_index_low.unwrap(), 0.251_446_333_942, epsilon = 1e-9);
     assert_eq!(found.division_index_high, Some(1.0));
     assert_eq!(found.soma_fraction, Some(0.5));
-    assert_eq!((found.class, found.route), (Some(BodyClass::Complete), Some(Route::Noise)));
+    assert_eq!((found.class, found.route), (Some(BodyClass::Complete), Some(Cue::Noise)));
 }
 
 #[test]

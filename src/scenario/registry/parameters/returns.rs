@@ -1,6 +1,6 @@
 //! The parameters of the two tasks' return curves: the same seven keys for each.
 
-use super::super::super::curve::{CurveKind, MOST_POINTS};
+use super::super::super::curve::CurveKind;
 use super::super::points::Points;
 use super::super::{Condition, Parameter};
 use super::{Real, Words};
@@ -95,7 +95,7 @@ macro_rules! task_parameters {
                 unit: "none",
                 meaning: "Measured returns as [x, y]; joined by a monotone cubic, \
                           linear beyond the last",
-                domain: Points { most: MOST_POINTS },
+                domain: Points { most: 1000 },
                 default: &[[0.0, 0.0], [1.0, 1.0]],
                 required: true,
                 condition: Some(only_for(&["table"])),
