@@ -2,6 +2,7 @@
 
 mod command_fixture;
 mod command_output;
+mod command_predict;
 mod command_wrong_scenario;
 mod record_folder;
 mod record_run;

@@ -4,7 +4,7 @@ use serde::Serialize;
 
 use super::{BodyOutlook, Selection};
 use crate::scenario::Settings;
-use crate::theory::{Cue, TaskReturn};
+use crate::theory::Cue;
 
 /// Body size under which patterned differentiation is not known in nature, cells.
 const SMALL_BODY_CELLS: usize = 1000;
@@ -39,11 +39,11 @@ pub enum Warning {
         /// Its expected lifetime propagules.
         r0: f64,
     },
-    /// Selection on the first steps towards differentiation is weaker than drift.
+    /// Selection on steps towards differentiation is weaker than drift.
     DriftDominates {
         /// Sites.
         sites: usize,
-        /// Advantage of a typical first step.
+        /// Gain in ln R0 of a typical step.
         advantage: f64,
     },
     /// Selection needs longer than a replicate lasts.
@@ -113,7 +113,7 @@ impl Warning {
                  dies out"
             ),
             Self::DriftDominates { sites, advantage } => format!(
-                "a first step towards differentiation gains {advantage:.1e}, less than drift \
+                "a step towards differentiation gains {advantage:.1e} in ln R0, less than drift \
                  moves in {sites} sites (1/N = {:.1e})",
                 1.0 / *sites as f64
             ),
@@ -180,11 +180,7 @@ pub(super) fn warnings(
 fn body_warnings(settings: &Settings, body: &BodyOutlook) -> Vec<Warning> {
     let cues = settings.traits.cues;
     let mut warnings = Vec::new();
-    let differs = |task: &TaskReturn| task.surface_effect.total_cmp(&task.interior_effect).is_ne();
-    let returns = &settings.returns;
-    let exposure_matters =
-        cues.contains(Cue::Exposure) || differs(&returns.viability) || differs(&returns.fecundity);
-    if exposure_matters && body.interior_share <= 0.0 {
+    if settings.exposure_matters() && body.interior_share <= 0.0 {
         warnings.push(Warning::NoInteriorCell { cells: body.cells });
     }
     for cue in cues.iter() {
@@ -214,18 +210,20 @@ fn why_constant(cue: Cue, settings: &Settings, body: &BodyOutlook) -> Option<&'s
     }
 }
 
-/// Drift or lack of time, where theory finds some cue favoured.
+/// Drift or lack of time, where theory finds some cue favoured. Both are judged from where drift
+/// alone takes a responsiveness, as disruptive selection is weak at the generalist itself.
 fn selection_warning(settings: &Settings, selection: &Selection) -> Option<Warning> {
     let traits = &settings.traits;
     let (sites, sd) = (settings.habitat.sites as f64, traits.mutation_sd);
     let favoured = || selection.pulls.iter().filter(|pull| pull.favoured);
-    let advantage = favoured().map(|pull| pull.advantage(sd)).max_by(f64::total_cmp)?;
+    // Neutral variance of an unbounded trait in overlapping generations, and at the same time
+    // the rate of its evolution per unit of d ln R0/dg: N mu sd^2 / 2.
+    let rate = sites * traits.mutation_probability * sd * sd / 2.0;
+    let start = libm::sqrt(rate).max(sd);
+    let advantage = favoured().map(|pull| pull.advantage(start, sd)).max_by(f64::total_cmp)?;
     if sites * advantage < 1.0 {
         return Some(Warning::DriftDominates { sites: settings.habitat.sites, advantage });
     }
-    // Neutral spread of an unbounded trait in overlapping generations: N mu sd^2 / 2.
-    let rate = sites * traits.mutation_probability * sd * sd / 2.0;
-    let start = libm::sqrt(rate).max(sd);
     let goal = responsiveness_at(settings.onset.index).min(traits.bound);
     let needed =
         favoured().map(|pull| pull.generations(start, goal, rate)).min_by(f64::total_cmp)?;
