@@ -83,7 +83,6 @@ impl Progress {
         let reached = (generation as u64).min(self.generations);
         state.reached.insert(replicate, reached);
         match &self.display {
-            None => {}
             Some(Display::Bars { all, overall }) => {
                 overall.set_position(state.reached.values().sum());
                 overall.set_message(format!("{}/{} replicates", state.finished, self.replicates));
@@ -97,7 +96,7 @@ impl Progress {
                 state.last_line = Instant::now();
                 self.say(&state);
             }
-            Some(Display::Lines) => {}
+            Some(Display::Lines) | None => {}
         }
     }
 
