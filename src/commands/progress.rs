@@ -1,11 +1,12 @@
 //! How a run goes, on standard error: bars on a terminal, a plain line now and then elsewhere.
 
 use std::collections::BTreeMap;
+use std::fmt;
 use std::io::{IsTerminal, Write, stderr};
 use std::sync::{Mutex, MutexGuard, PoisonError};
 use std::time::{Duration, Instant};
 
-use indicatif::{MultiProgress, ProgressBar, ProgressStyle};
+use indicatif::{MultiProgress, ProgressBar, ProgressState, ProgressStyle};
 
 use crate::record::{CensusRow, ReplicateRow};
 use crate::scenario::Settings;
@@ -47,7 +48,7 @@ impl Progress {
                 let whole = generations.saturating_mul(u64::from(replicates));
                 let overall = all.add(ProgressBar::new(whole));
                 overall.set_style(style(
-                    "all {bar:24} {pos}/{len} generations, {per_sec}, {eta} left, {msg}",
+                    "all {bar:24} {pos}/{len} generations, {rate}, {eta} left, {msg}",
                 ));
                 Display::Bars { all, overall }
             } else {
@@ -67,9 +68,9 @@ impl Progress {
 
     /// Takes the bars off the screen.
     pub(super) fn clear(&self) {
-        if let Some(Display::Bars { all, .. }) = &self.display {
-            // A terminal that is gone needs no clearing.
-            let _ = all.clear();
+        if let Some(Display::Bars { overall, .. }) = &self.display {
+            self.state().bars.values().for_each(ProgressBar::finish_and_clear);
+            overall.finish_and_clear();
         }
     }
 
@@ -79,31 +80,29 @@ impl Progress {
 
     fn note(&self, replicate: u32, generation: f64) {
         let mut state = self.state();
+        #[expect(clippy::cast_sign_loss, reason = "generations are counted up from 0")]
         let reached = (generation as u64).min(self.generations);
         state.reached.insert(replicate, reached);
         match &self.display {
-            None => {}
             Some(Display::Bars { all, overall }) => {
                 overall.set_position(state.reached.values().sum());
                 overall.set_message(format!("{}/{} replicates", state.finished, self.replicates));
-                let bar = state
-                    .bars
-                    .entry(replicate)
-                    .or_insert_with(|| all.add(self.replicate_bar(replicate)));
+                let bar =
+                    state.bars.entry(replicate).or_insert_with(|| self.add_bar(all, replicate));
                 bar.set_position(reached);
             }
-            Some(Display::Lines) => {
-                if state.last_line.elapsed() >= PLAIN_LINE_EVERY {
-                    state.last_line = Instant::now();
-                    self.say(&state);
-                }
+            Some(Display::Lines) if state.last_line.elapsed() >= PLAIN_LINE_EVERY => {
+                state.last_line = Instant::now();
+                self.say(&state);
             }
+            Some(Display::Lines) | None => {}
         }
     }
 
-    fn replicate_bar(&self, replicate: u32) -> ProgressBar {
-        let bar = ProgressBar::new(self.generations);
-        bar.set_style(style("{prefix} {bar:24} {pos}/{len} generations, {per_sec}, {eta} left"));
+    fn add_bar(&self, all: &MultiProgress, replicate: u32) -> ProgressBar {
+        // Added first: a bar on its own would draw over the others.
+        let bar = all.add(ProgressBar::new(self.generations));
+        bar.set_style(style("{prefix} {bar:24} {pos}/{len} generations, {rate}, {eta} left"));
         bar.set_prefix(format!("replicate {replicate}"));
         bar
     }
@@ -126,7 +125,12 @@ impl Progress {
 }
 
 fn style(template: &str) -> ProgressStyle {
-    ProgressStyle::with_template(template).unwrap_or_else(|_| ProgressStyle::default_bar())
+    ProgressStyle::with_template(template)
+        .unwrap_or_else(|_| ProgressStyle::default_bar())
+        .with_key("rate", |state: &ProgressState, text: &mut dyn fmt::Write| {
+            // Writing to a string cannot fail.
+            let _ = write!(text, "{:.0} generations/s", state.per_sec());
+        })
 }
 
 impl Watcher for Progress {
