@@ -29,12 +29,12 @@ fn rate_factor(sigma_beta: f64, rho: impl Fn(f64) -> f64) -> f64 {
 #[test]
 fn the_substitution_integral_agrees_with_known_factors() {
     for (sites, sigma_beta, factor) in [
-        (20, 0.05, 0.469_803_32),
-        (100, 0.001, 0.494_987_76),
-        (100, 0.01, 0.493_864_72),
-        (100, 0.05, 0.480_510_13),
+        (20.0, 0.05, 0.469_803_32),
+        (100.0, 0.001, 0.494_987_76),
+        (100.0, 0.01, 0.493_864_72),
+        (100.0, 0.05, 0.480_510_13),
     ] {
-        let found = rate_factor(sigma_beta, |r| moran_fixation(r, 1, sites));
+        let found = rate_factor(sigma_beta, |r| moran_fixation(r, 1.0, sites));
         approx::assert_relative_eq!(found, factor, max_relative = 1e-7);
     }
 }

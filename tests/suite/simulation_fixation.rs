@@ -127,7 +127,7 @@ fn a_mutant_of_other_mortality_takes_over_as_the_death_birth_process_says() {
 fn the_death_birth_process_tends_to_the_plain_moran_form() {
     let apart = |sites: u32, fecundity: f64, mortality: f64| {
         let exact = DeathBirth::exact(sites, fecundity, mortality).fixation(1);
-        exact / moran_fixation(fecundity / mortality, 1, sites as i32) - 1.0
+        exact / moran_fixation(fecundity / mortality, 1.0, f64::from(sites)) - 1.0
     };
     approx::assert_abs_diff_eq!(apart(10, 1.5, 1.0), -0.092, epsilon = 5e-4);
     for (fecundity, mortality) in [(1.5, 1.0), (0.9, 0.7), (2.0, 1.2)] {
@@ -145,12 +145,12 @@ fn the_death_birth_process_tends_to_the_plain_moran_form() {
 #[test]
 fn the_plain_moran_form_agrees_with_the_solved_chain() {
     for (sites, r, value) in [
-        (10, 0.9, 0.059_482_214_754_2),
-        (10, 1.1, 0.147_950_358_984),
-        (10, 2.0, 0.500_488_758_553),
-        (100, 1.01, 0.015_708_656_559_8),
+        (10.0, 0.9, 0.059_482_214_754_2),
+        (10.0, 1.1, 0.147_950_358_984),
+        (10.0, 2.0, 0.500_488_758_553),
+        (100.0, 1.01, 0.015_708_656_559_8),
     ] {
-        approx::assert_relative_eq!(moran_fixation(r, 1, sites), value, max_relative = 1e-10);
+        approx::assert_relative_eq!(moran_fixation(r, 1.0, sites), value, max_relative = 1e-10);
     }
 }
 

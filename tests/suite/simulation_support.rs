@@ -141,9 +141,9 @@ impl DeathBirth {
 }
 
 /// Fixation in the plain Moran process, `(1 - r^-i) / (1 - r^-N)` (Moran 1958; Ewens 2004).
-pub(crate) fn moran_fixation(r: f64, start: i32, sites: i32) -> f64 {
+pub(crate) fn moran_fixation(r: f64, start: f64, sites: f64) -> f64 {
     if (r - 1.0).abs() < 1e-12 {
-        return f64::from(start) / f64::from(sites);
+        return start / sites;
     }
-    (1.0 - r.powi(-start)) / (1.0 - r.powi(-sites))
+    (1.0 - r.powf(-start)) / (1.0 - r.powf(-sites))
 }

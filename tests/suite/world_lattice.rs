@@ -60,10 +60,10 @@ fn every_site_touches_twelve() {
     let (lattice, _) = largest();
     let inner: Vec<u32> = lattice.order()[..201].to_vec();
     for place in inner {
-        let [x, y, z] = lattice.position_um(place, 1.0);
+        let here = lattice.position_um(place, 1.0);
         let distance = |other: u32| {
-            let [u, v, w] = lattice.position_um(other, 1.0);
-            ((x - u).powi(2) + (y - v).powi(2) + (z - w).powi(2)).sqrt()
+            let there = lattice.position_um(other, 1.0);
+            here.iter().zip(there).map(|(a, b)| (a - b).powi(2)).sum::<f64>().sqrt()
         };
         let touching: BTreeSet<u32> =
             lattice.order().iter().copied().filter(|o| (distance(*o) - 1.0).abs() < 1e-9).collect();

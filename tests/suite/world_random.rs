@@ -1,5 +1,5 @@
 //! Random numbers against the published generators: xoshiro256++ (Blackman & Vigna 2021) and
-//! SplitMix64 (Steele, Lea & Flood 2014), the latter as the mixer of seeds.
+//! `SplitMix64` (Steele, Lea & Flood 2014), the latter as the mixer of seeds.
 
 use rand::{Rng, RngExt, SeedableRng};
 use rand_xoshiro::{SplitMix64, Xoshiro256PlusPlus};
@@ -110,7 +110,7 @@ fn the_mixer_is_split_mix_64() {
     }
 }
 
-/// A replicate's generator is xoshiro256++ with four outputs of SplitMix64 for its state.
+/// A replicate's generator is xoshiro256++ with four outputs of `SplitMix64` for its state.
 #[test]
 fn a_seed_is_spread_over_the_state_by_split_mix_64() {
     let known: [(u64, [u64; 4]); 2] = [
@@ -138,7 +138,7 @@ fn a_seed_is_spread_over_the_state_by_split_mix_64() {
     }
 }
 
-/// `mix(mix(mix(seed) ^ point) ^ replicate)`, mix being the first output of SplitMix64.
+/// `mix(mix(mix(seed) ^ point) ^ replicate)`, mix being the first output of `SplitMix64`.
 #[test]
 fn replicates_are_seeded_by_the_documented_mix() {
     let mix = |state: u64| split_mix(state).next_u64();
