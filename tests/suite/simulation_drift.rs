@@ -9,7 +9,9 @@
 //! would make it N Vm / 2. The dead parent refills its site once in 10 N here, by its last propagules of the
 //! tick, whence a factor `1 / (1 - 1/(10 N))`.
 
-use super::simulation_support::{assert_agrees, lottery, mean_and_error, population, size, trials};
+use super::simulation_support::{
+    assert_agrees, lottery, mean_and_error, own_refills, population, size, trials,
+};
 use somadawn::world::Population;
 
 const SD: f64 = 0.02;
@@ -53,7 +55,7 @@ fn a_neutral_trait_varies_as_moran_with_distinct_parents_says() {
         let count = size(populations, 10 * populations);
         let means = trials(201, count, |seed| mean_variance(sites, probability, 50, seed));
         let n = sites as f64;
-        let expected = (n - 1.0) / 2.0 / (1.0 - 1.0 / (10.0 * n));
+        let expected = (n - 1.0) / 2.0 / (1.0 - own_refills(n));
         let what = format!("S^2 / Vm, N = {sites}, mu = {probability}");
         let (mean, error) = mean_and_error(&means);
         assert_agrees(&what, (mean, error), expected, 0.03);

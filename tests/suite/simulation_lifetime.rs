@@ -170,7 +170,7 @@ fn lucky_bodies(n: u32, programme: &Programme) -> Vec<Body> {
     let p = programme.noise_probability();
     let mean = 2.0 * p - 1.0;
     let [up, down] = [1.0, -1.0].map(|draw| share(programme, Cue::Noise, draw - mean));
-    let mut odds = (1.0 - p).powi(n as i32);
+    let mut odds = (1.0 - p).powf(f64::from(n));
     let mut bodies = Vec::new();
     for k in 0..=n {
         let (plus, minus) = (f64::from(k), f64::from(n - k));

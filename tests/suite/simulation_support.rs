@@ -70,9 +70,15 @@ pub(crate) fn lottery(sites: usize) -> Settings {
     settings
 }
 
-/// Ticks for [`lottery`], so short that hardly any of a colony's last propagules, released in the tick
-/// of its death, reach its own site: one refill in `10 N` of N sites.
+/// Ticks for [`lottery`], short beside the hour that a refill takes.
 pub(crate) const TICK_H: f64 = RELEASE_H / 5.0;
+
+/// Share of vacancies that the dead parent refills: propagules that it released in the tick of its
+/// death, before it died, find its own site empty. They are `TICK_H / (2 RELEASE_H)` on average, and each
+/// lands there with probability 1/N.
+pub(crate) fn own_refills(sites: f64) -> f64 {
+    0.5 * TICK_H / RELEASE_H / sites
+}
 
 /// A population whose site s starts with baseline `baseline(s)`, marked as founder s.
 pub(crate) fn population(
@@ -86,10 +92,12 @@ pub(crate) fn population(
     })
 }
 
-/// Death-birth Moran process with two types in which the dead cannot refill their own site.
+/// Death-birth Moran process with two types.
 ///
-/// With i mutants of N, deaths at `d_m`, `d_r` per head and fecundities `f_m`, `f_r`:
-/// `T+(i) = d_r (N-i) i f_m / (i f_m + (N-i-1) f_r)`, `T-(i) = d_m i (N-i) f_r / ((i-1) f_m + (N-i) f_r)`.
+/// With i mutants of N, deaths at `d_m`, `d_r` per head and fecundities `f_m`, `f_r`, where the dead count
+/// with a weight w among the parents of those who refill their site:
+/// `T+(i) = d_r (N-i) i f_m / (i f_m + (N-i-1+w) f_r)`, `T-(i) = d_m i (N-i) f_r / ((i-1+w) f_m + (N-i) f_r)`.
+/// In continuous time w is 0: parent and victim are distinct. (With w = 1 it is the plain form.)
 #[derive(Debug, Clone, Copy)]
 pub(crate) struct DeathBirth {
     pub(crate) sites: u32,
@@ -97,19 +105,31 @@ pub(crate) struct DeathBirth {
     pub(crate) fecundity: f64,
     /// Death rate of the mutant over the resident's.
     pub(crate) mortality: f64,
+    /// Weight of the dead.
+    pub(crate) dead: f64,
 }
 
 impl DeathBirth {
+    /// The process in continuous time.
+    pub(crate) const fn exact(sites: u32, fecundity: f64, mortality: f64) -> Self {
+        Self { sites, fecundity, mortality, dead: 0.0 }
+    }
+
+    /// The process as batched by [`TICK_H`].
+    pub(crate) fn batched(sites: u32, fecundity: f64, mortality: f64) -> Self {
+        let n = f64::from(sites);
+        Self { dead: own_refills(n) * (n - 1.0), ..Self::exact(sites, fecundity, mortality) }
+    }
+
     /// Probability that `start` mutants take over, by the product formula for birth-death chains
     /// (Ewens 2004): `sum_{k<i} prod_{j<=k} T-(j)/T+(j) / sum_{k<N} (the same)`.
     pub(crate) fn fixation(self, start: u32) -> f64 {
-        let n = f64::from(self.sites);
-        let f = self.fecundity;
+        let (n, f, dead) = (f64::from(self.sites), self.fecundity, self.dead);
         let (mut product, mut sum, mut reached) = (1.0, 1.0, 1.0);
         for j in 1..self.sites {
             let i = f64::from(j);
-            let up = (n - i) * i * f / (i * f + (n - i - 1.0));
-            let down = self.mortality * i * (n - i) / ((i - 1.0) * f + (n - i));
+            let up = (n - i) * i * f / (i * f + (n - i - 1.0 + dead));
+            let down = self.mortality * i * (n - i) / ((i - 1.0 + dead) * f + (n - i));
             product *= down / up;
             sum += product;
             if j < start {
@@ -121,9 +141,9 @@ impl DeathBirth {
 }
 
 /// Fixation in the plain Moran process, `(1 - r^-i) / (1 - r^-N)` (Moran 1958; Ewens 2004).
-pub(crate) fn moran_fixation(r: f64, start: i32, sites: i32) -> f64 {
+pub(crate) fn moran_fixation(r: f64, start: f64, sites: f64) -> f64 {
     if (r - 1.0).abs() < 1e-12 {
-        return f64::from(start) / f64::from(sites);
+        return start / sites;
     }
-    (1.0 - r.powi(-start)) / (1.0 - r.powi(-sites))
+    (1.0 - r.powf(-start)) / (1.0 - r.powf(-sites))
 }
