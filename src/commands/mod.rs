@@ -4,7 +4,7 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand};
 
-use crate::scenario::{Override, ScenarioError, Settings};
+use crate::scenario::{Override, ScenarioError, Settings, read_text};
 
 mod check;
 pub mod evolve;
@@ -12,6 +12,7 @@ pub mod exit;
 mod failure;
 mod output;
 pub mod predict;
+mod progress;
 mod reference;
 mod schema;
 mod template;
@@ -99,6 +100,21 @@ impl ScenarioFile {
     /// As [`Settings::load`].
     pub fn load(&self, common: &Common) -> Result<Settings, ScenarioError> {
         Settings::load(&self.path, &common.overrides())
+    }
+
+    /// The scenario's text, for reading it again with other overrides.
+    ///
+    /// # Errors
+    ///
+    /// As [`read_text`].
+    pub fn text(&self) -> Result<String, ScenarioError> {
+        read_text(&self.path)
+    }
+
+    /// What messages call the scenario.
+    #[must_use]
+    pub fn name(&self) -> String {
+        self.path.display().to_string()
     }
 }
 

@@ -1,8 +1,13 @@
 //! `somadawn predict SCENARIO`: what theory says.
 
+use std::fmt::Write as _;
+
 use clap::Args;
 
+use super::output::{print, print_json};
 use super::{Common, Failure, ScenarioFile};
+use crate::scenario::{Override, Settings, nearest};
+use crate::study::prediction::{CriticalQuery, Prediction, predict, predict_with_critical};
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -37,8 +42,112 @@ fn parse_bracket(text: &str) -> Result<Bracket, String> {
 }
 
 pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure> {
-    arguments.scenario.load(common)?;
-    Err(Failure::NotBuilt { verb: "predict" })
+    let settings = arguments.scenario.load(common)?;
+    let prediction = if arguments.critical.is_empty() {
+        predict(&settings)
+    } else {
+        with_critical(arguments, common, &settings)?
+    };
+    if common.json {
+        return print_json(&prediction);
+    }
+    Ok(print(&render(&prediction))?)
+}
+
+fn with_critical(
+    arguments: &Arguments,
+    common: &Common,
+    settings: &Settings,
+) -> Result<Prediction, Failure> {
+    let text = arguments.scenario.text()?;
+    let keys = &arguments.critical;
+    let Bracket { low, high } = bracket(arguments, settings)?;
+    let query = CriticalQuery { keys: keys.clone(), low, high };
+    let settings_at = |value| {
+        let moved = keys.iter().map(|key| Override::number("--critical", key, value));
+        let overrides: Vec<_> = common.overrides().into_iter().chain(moved).collect();
+        Settings::from_toml_str(&arguments.scenario.name(), &text, &overrides)
+    };
+    Ok(predict_with_critical(settings, &query, settings_at)?)
+}
+
+/// Where to look: as asked for, else from a quarter to four times the first key's value.
+fn bracket(arguments: &Arguments, settings: &Settings) -> Result<Bracket, Failure> {
+    let numbers = settings.spelled_out().into_iter();
+    let numbers: Vec<_> =
+        numbers.filter_map(|(path, value)| Some((path, value.as_float()?))).collect();
+    let value_of = |key: &String| {
+        let value = numbers.iter().find(|(path, _)| path == key).map(|(_, value)| *value);
+        value.ok_or_else(|| Failure::NoCriticalKey {
+            key: key.clone(),
+            nearest: nearest(key, numbers.iter().map(|(path, _)| *path)),
+        })
+    };
+    let values = arguments.critical.iter().map(value_of).collect::<Result<Vec<_>, _>>()?;
+    match (arguments.between, arguments.critical.first(), values.first()) {
+        (Some(bracket), _, _) => Ok(bracket),
+        (None, _, Some(value)) if *value > 0.0 => {
+            Ok(Bracket { low: value / 4.0, high: 4.0 * value })
+        }
+        (None, key, value) => Err(Failure::NoBracket {
+            key: key.cloned().unwrap_or_default(),
+            value: value.copied().unwrap_or_default(),
+        }),
+    }
+}
+
+/// The prediction as a list to read.
+fn render(prediction: &Prediction) -> String {
+    let mut text = format!("{}\n\n", prediction.title);
+    for (name, value) in rows(prediction) {
+        // Writing to a string cannot fail.
+        let _ = writeln!(text, "{name:<26} {value}");
+    }
+    text
+}
+
+fn rows(prediction: &Prediction) -> Vec<(String, String)> {
+    let Prediction { generalist, best, .. } = prediction;
+    let row = |name: &str, value: String| (name.to_owned(), value);
+    let mut rows = vec![
+        row("verdict", prediction.verdict.to_string()),
+        row("generalist soma share", format!("{:.4}", generalist.soma_share)),
+        row("generalist R0", format!("{} propagules", number(generalist.r0))),
+    ];
+    for cue in &prediction.cues {
+        let (gradient, curvature) = (number(cue.gradient), number(cue.curvature));
+        let pull = format!("{} (gradient {gradient}, curvature {curvature})", cue.verdict);
+        rows.push((format!("cue {}", cue.cue), pull));
+    }
+    let gain = best.r0.zip(generalist.r0).filter(|(_, before)| *before > 0.0);
+    let gain = gain.map(|(after, before)| format!(" ({:+.2} %)", 100.0 * (after / before - 1.0)));
+    let best_r0 = format!("{} propagules{}", number(best.r0), gain.unwrap_or_default());
+    rows.extend([
+        row("best programme R0", best_r0),
+        row("best division index", format!("{:.4}", best.division_index)),
+        row("best soma fraction", format!("{:.4}", best.soma_fraction)),
+        row("best class", best.class.to_string()),
+    ]);
+    for (name, value) in &best.traits {
+        rows.push((format!("best {name}"), format!("{value:.3}")));
+    }
+    if let Some(critical) = &prediction.critical {
+        let (local, global) = (place(critical.local), place(critical.global));
+        rows.push(row("critical value of", critical.keys.join(", ")));
+        rows.extend([
+            row("  local verdict changes", local),
+            row("  global verdict changes", global),
+        ]);
+    }
+    rows
+}
+
+fn place(value: Option<f64>) -> String {
+    value.map_or_else(|| "nowhere in the bracket".to_owned(), |value| format!("at {value:.6}"))
+}
+
+fn number(value: Option<f64>) -> String {
+    value.map_or_else(|| "none".to_owned(), |value| format!("{value:.4}"))
 }
 
 #[cfg(test)]

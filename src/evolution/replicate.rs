@@ -116,7 +116,8 @@ impl<'s> Replicate<'s> {
 
     fn next_census_generation(&self) -> f64 {
         let every = self.settings.run.census_every;
-        let next = (self.generation() / every as f64).floor() as u64 + 1;
+        #[expect(clippy::cast_sign_loss, reason = "generations are counted up from 0")]
+        let next = (self.generation() / every as f64) as u64 + 1;
         // The last census is at the end, even where that is no multiple of the interval.
         let due = if self.censuses.is_empty() { every } else { next * every };
         due.min(self.settings.run.generations) as f64

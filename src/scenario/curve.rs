@@ -1,9 +1,7 @@
 //! Return curves between the scenario file and the theory.
 
 use crate::theory::ReturnCurve;
-use crate::theory::returns::MonotoneCubic;
-
-use super::fault::{FaultKind, PointsProblem};
+use crate::theory::returns::CurveError;
 
 /// The curves that the word `curve` can name.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -45,25 +43,18 @@ pub(crate) enum CurveSpec {
     },
 }
 
-/// The curve that `spec`, found at the table `path`, stands for.
+/// The curve that `spec` stands for.
 ///
 /// # Errors
 ///
-/// Where theory refuses the points of a table.
-pub(crate) fn build_curve(spec: &CurveSpec, path: &str) -> Result<ReturnCurve, FaultKind> {
-    Ok(match spec {
-        CurveSpec::Power { exponent } => ReturnCurve::Power { exponent: *exponent },
-        CurveSpec::Saturating { half } => ReturnCurve::Saturating { half: *half },
-        CurveSpec::Sigmoid { half, steepness } => {
-            ReturnCurve::Sigmoid { half: *half, steepness: *steepness }
-        }
-        CurveSpec::Table { points } => {
-            ReturnCurve::Table(MonotoneCubic::through(points).map_err(|error| {
-                let problem = PointsProblem::Refused { reason: error.to_string() };
-                FaultKind::Points { key: format!("{path}.points"), problem }
-            })?)
-        }
-    })
+/// Where theory refuses the numbers.
+pub(crate) fn build_curve(spec: &CurveSpec) -> Result<ReturnCurve, CurveError> {
+    match spec {
+        CurveSpec::Power { exponent } => ReturnCurve::power(*exponent),
+        CurveSpec::Saturating { half } => ReturnCurve::saturating(*half),
+        CurveSpec::Sigmoid { half, steepness } => ReturnCurve::sigmoid(*half, *steepness),
+        CurveSpec::Table { points } => ReturnCurve::table(points),
+    }
 }
 
 /// What the scenario file says to get `curve`.
@@ -74,6 +65,6 @@ pub(crate) fn spec_of(curve: &ReturnCurve) -> CurveSpec {
         ReturnCurve::Sigmoid { half, steepness } => {
             CurveSpec::Sigmoid { half: *half, steepness: *steepness }
         }
-        ReturnCurve::Table(cubic) => CurveSpec::Table { points: cubic.points().collect() },
+        ReturnCurve::Table(table) => CurveSpec::Table { points: table.points().collect() },
     }
 }

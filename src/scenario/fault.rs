@@ -6,11 +6,13 @@ use std::sync::Arc;
 use miette::{Diagnostic, LabeledSpan, NamedSource, SourceCode};
 use thiserror::Error;
 
+use crate::theory::returns::CurveError;
+
 /// A text that was read, with the name it goes by: the file's path, or the option that gave it.
 pub type Source = Arc<NamedSource<String>>;
 
 /// What is wrong. Every kind names the key and the value, and [`FaultKind::remedy`] the way out.
-#[derive(Debug, Clone, PartialEq, Eq, Error)]
+#[derive(Debug, Clone, PartialEq, Error)]
 pub enum FaultKind {
     /// The text is no TOML.
     #[error("not valid TOML: {message}")]
@@ -171,6 +173,14 @@ pub enum FaultKind {
         /// Which rule.
         problem: PointsProblem,
     },
+    /// Numbers that are in range one by one, but together make no return curve.
+    #[error("`{table}` makes no return curve: {source}")]
+    Curve {
+        /// The curve's table.
+        table: String,
+        /// What is wrong with it.
+        source: CurveError,
+    },
     /// An override that is not `key.path=value`.
     #[error("`{text}` is not of the form key.path=value")]
     OverrideForm {
@@ -217,12 +227,6 @@ pub enum PointsProblem {
     XNotRising {
         /// Place in the list, from 1.
         number: usize,
-    },
-    /// The curve refuses them for a reason of its own.
-    #[error("{reason}")]
-    Refused {
-        /// The reason, in words.
-        reason: String,
     },
     /// y falls.
     #[error("the y of point {number} must not be less than that of the point before it")]

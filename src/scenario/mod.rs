@@ -24,5 +24,7 @@ mod unknown;
 
 pub use error::{Faults, ScenarioError};
 pub use fault::{Fault, FaultKind};
+pub use nearest::nearest;
 pub use overrides::Override;
+pub use read::read_text;
 pub use settings::Settings;

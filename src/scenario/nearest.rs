@@ -7,10 +7,8 @@ const LEAST_LIKENESS: f64 = 0.6;
 ///
 /// Likeness is the normalised Damerau-Levenshtein similarity, raised by how far the beginnings
 /// agree (Jaro-Winkler), case ignored.
-pub(crate) fn nearest<'a>(
-    unknown: &str,
-    known: impl IntoIterator<Item = &'a str>,
-) -> Option<&'a str> {
+#[must_use]
+pub fn nearest<'a>(unknown: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     let best = known
         .into_iter()
         .map(|name| (likeness(unknown, name), name))

@@ -32,10 +32,10 @@ impl Override {
         Self { option: "--seed", text: format!("seed={seed}") }
     }
 
-    /// The override that sets the number at `key`, exactly.
+    /// The override that sets the number at `key` to the last bit, as asked for by `option`.
     #[must_use]
-    pub fn number(key: &str, value: f64) -> Self {
-        Self::set(format!("{key}={value:?}"))
+    pub fn number(option: &'static str, key: &str, value: f64) -> Self {
+        Self { option, text: format!("{key}={value:?}") }
     }
 
     pub(crate) fn source(&self) -> Source {

@@ -9,7 +9,7 @@ use std::sync::Arc;
 use miette::NamedSource;
 use toml::de::DeTable;
 
-use crate::theory::TaskReturn;
+use crate::theory::{ReturnCurve, TaskReturn};
 
 use super::curve::{CurveKind, CurveSpec, build_curve};
 use super::error::{Faults, LARGEST_FILE, ScenarioError};
@@ -81,7 +81,12 @@ impl Settings {
     }
 }
 
-fn read_text(path: &Path) -> Result<String, ScenarioError> {
+/// The text of the scenario file at `path`.
+///
+/// # Errors
+///
+/// When there is no such file, or it cannot be read as text.
+pub fn read_text(path: &Path) -> Result<String, ScenarioError> {
     let unreadable = |source: io::Error| {
         let path = path.to_owned();
         match source.kind() {
@@ -241,10 +246,13 @@ impl Reader<'_> {
             },
             CurveKind::Table => CurveSpec::Table { points: self.take(&task.points) },
         };
-        let table = task.curve.path.trim_end_matches(".curve");
-        let curve = build_curve(&spec, table).unwrap_or_else(|kind| {
-            self.note(task.curve.path, kind);
-            crate::theory::ReturnCurve::Power { exponent: task.exponent.default }
+        let sound = self.sound(&task.paths());
+        let curve = build_curve(&spec).unwrap_or_else(|source| {
+            if sound {
+                let table = task.curve.path.trim_end_matches(".curve").to_owned();
+                self.note(task.curve.path, FaultKind::Curve { table, source });
+            }
+            ReturnCurve::Power { exponent: task.exponent.default }
         });
         TaskReturn {
             curve,

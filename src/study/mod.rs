@@ -2,8 +2,12 @@
 //!
 //! Nothing here knows of the command line.
 
+pub mod evolve;
 pub mod outlook;
 pub mod prediction;
 pub mod run;
+mod start;
 
+pub use outlook::Outlook;
 pub use prediction::Prediction;
+pub use start::start;

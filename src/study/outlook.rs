@@ -1,11 +1,14 @@
 //! What follows from a scenario before anything is simulated: the `check` command's document.
 
+use rand::SeedableRng;
+use rand_xoshiro::Xoshiro256PlusPlus;
 use serde::Serialize;
 
 use crate::scenario::Settings;
+use crate::study::prediction::life_history;
 use crate::theory::{Cue, TaskReturn};
+use crate::tissue::{Growth, Pace, compact_radius_um};
 
-mod ball;
 mod selection;
 mod warning;
 
@@ -14,6 +17,9 @@ pub use warning::{Advice, Warning};
 
 /// Cell lives per second and thread that a run is assumed to reach, 1/s.
 const CELL_LIVES_PER_SECOND: f64 = 1e7;
+
+/// Bodies over which the share of interior cells is averaged.
+const BODIES_LOOKED_AT: usize = 16;
 
 /// Memory that a cell is assumed to take, its colony's share included, bytes.
 const BYTES_PER_CELL: f64 = 64.0;
@@ -95,7 +101,7 @@ impl Outlook {
     pub fn of(settings: &Settings, selection: &Selection, threads: usize) -> Self {
         let body = body(settings);
         let time = time(settings, selection.soma_share, body.interior_share);
-        let warnings = warning::warnings(settings, &body, selection);
+        let warnings = warning::warnings(settings, &body, &time, selection);
         Self {
             title: settings.title.clone(),
             transport: None,
@@ -113,39 +119,23 @@ fn body(settings: &Settings) -> BodyOutlook {
     let cells = settings.body.adult_cells;
     BodyOutlook {
         cells,
-        radius_um: body_radius_um(cells, settings.body.cell_diameter_um),
+        radius_um: compact_radius_um(cells, settings.body.cell_diameter_um),
         interior_share: interior_share(cells),
     }
 }
 
-/// Radius of the ball that has the volume of `cells` lattice sites, um, for cells `d` um apart:
-/// `(3 n d^3 / (4 pi sqrt 2))^(1/3)`, as a site of the face-centred cubic lattice has the volume
-/// `d^3 / sqrt 2`.
-#[must_use]
-pub fn body_radius_um(cells: usize, d: f64) -> f64 {
-    let volume = cells as f64 / std::f64::consts::SQRT_2;
-    d * libm::cbrt(3.0 * volume / (4.0 * std::f64::consts::PI))
-}
-
-/// Share of interior cells of a compact body: the one place that says how bodies lie.
+/// Mean share of interior cells over a few compact bodies, whose outermost shells are filled at
+/// random; how a body grew does not matter, so they are founded at adult size.
 fn interior_share(cells: usize) -> f64 {
-    ball::interior_share(cells)
-}
-
-/// Hours from founding to adulthood, `ceil(log2(n/p)) * cost / (income - upkeep)`: cells start
-/// without reserve and divide together, the last round as far as it is needed. Where division
-/// costs vary this is a round number, not a mean.
-#[must_use]
-pub fn growth_h(settings: &Settings) -> f64 {
-    let (n, p) = (settings.body.adult_cells, settings.life.propagule_cells.max(1));
-    let mut rounds = 0_u32;
-    let mut cells = p;
-    while cells < n {
-        cells = cells.saturating_mul(2);
-        rounds += 1;
+    let mut growth = Growth::of_clump(cells, cells);
+    let pace = Pace { net_income_eu_per_h: 1.0, division_cost_eu: 1.0, division_cv: 0.0 };
+    let mut rng = Xoshiro256PlusPlus::seed_from_u64(0);
+    let mut interior = 0;
+    for _ in 0..BODIES_LOOKED_AT {
+        growth.grow(&pace, f64::INFINITY, &mut rng);
+        interior += growth.exposed().filter(|exposed| !exposed).count();
     }
-    let budget = &settings.budget;
-    f64::from(rounds) * budget.division_cost_eu / (budget.income_eu_per_h - budget.upkeep_eu_per_h)
+    interior as f64 / (cells * BODIES_LOOKED_AT) as f64
 }
 
 /// Hazard `m_ext + m0 / V` of an adult generalist of soma share `z`, 1/h; infinite at V = 0.
@@ -155,29 +145,15 @@ fn generalist_hazard_per_h(settings: &Settings, z: f64, interior_share: f64) -> 
     settings.life.extrinsic_hazard_per_h + settings.life.adult_hazard_per_h / viability
 }
 
-/// Propagules that a founder whose cells all have soma share `z` leaves,
-/// `R0 = exp(-m_j growth_h) F / (c_p m)` with `F = n k b(1 - z) e0`.
-fn generalist_r0(settings: &Settings, z: f64) -> f64 {
-    let life = &settings.life;
-    let inside = interior_share(settings.body.adult_cells);
-    let fecundity = &settings.returns.fecundity;
-    let rate = settings.body.adult_cells as f64
-        * mean_effect(fecundity, inside)
-        * fecundity.curve.value(1.0 - z)
-        * settings.budget.income_eu_per_h;
-    let hazard = generalist_hazard_per_h(settings, z, inside);
-    let adulthood = libm::exp(-life.juvenile_hazard_per_h * growth_h(settings));
-    adulthood * rate / (life.propagule_cost_eu * hazard)
-}
-
 fn mean_effect(task: &TaskReturn, interior_share: f64) -> f64 {
     (1.0 - interior_share) * task.surface_effect + interior_share * task.interior_effect
 }
 
 /// At a steady rate of propagules and a constant hazard m, parents are on average `1/m` into
-/// adulthood.
+/// adulthood. Where division costs vary, growth is that of the mean cost.
 fn time(settings: &Settings, soma_share: f64, interior_share: f64) -> TimeOutlook {
-    let growth_h = growth_h(settings);
+    let income = settings.budget.income_eu_per_h;
+    let growth_h = life_history(settings).growth_h(income).unwrap_or(f64::INFINITY);
     let hazard = generalist_hazard_per_h(settings, soma_share, interior_share);
     TimeOutlook { growth_h, generation_h: growth_h + 1.0 / hazard }
 }

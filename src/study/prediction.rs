@@ -5,16 +5,21 @@
 
 use std::collections::BTreeMap;
 
+use rand::SeedableRng;
+use rand_xoshiro::Xoshiro256PlusPlus;
 use serde::Serialize;
 
 use crate::scenario::Settings;
 use crate::theory::best::BETTER;
+use crate::theory::body::joined;
 use crate::theory::critical::{global_critical, local_critical};
 use crate::theory::lineage::label_compositions;
 use crate::theory::reaction_norm::NOISE_BIAS_BOUND;
 use crate::theory::{
-    BestProgramme, Compositions, Cue, CueSelection, Generalist, LifeHistory, Model,
+    BestProgramme, BodyClass, CellKind, Composition, Compositions, Cue, CueSelection, Generalist,
+    LifeHistory, Model, Verdict,
 };
+use crate::tissue::{Growth, Pace};
 
 /// What `predict --json` prints. Numbers that are not finite are null.
 #[derive(Debug, Clone, PartialEq, Serialize)]
@@ -28,7 +33,7 @@ pub struct Prediction {
     /// The best programme over all heritable traits.
     pub best: BestPart,
     /// The overall verdict.
-    pub verdict: &'static str,
+    pub verdict: Verdict,
     /// Where verdicts change, if that was asked for.
     pub critical: Option<CriticalPart>,
 }
@@ -46,13 +51,13 @@ pub struct GeneralistPart {
 #[derive(Debug, Clone, Copy, PartialEq, Serialize)]
 pub struct CuePart {
     /// The cue's name.
-    pub cue: &'static str,
+    pub cue: Cue,
     /// First derivative of ln R0 by its responsiveness; null where R0 is 0.
     pub gradient: Option<f64>,
     /// Second derivative.
     pub curvature: Option<f64>,
     /// What they mean.
-    pub verdict: &'static str,
+    pub verdict: Verdict,
 }
 
 /// The best programme.
@@ -67,7 +72,7 @@ pub struct BestPart {
     /// Expected share of soma cells.
     pub soma_fraction: f64,
     /// Commonest class of body.
-    pub class: &'static str,
+    pub class: BodyClass,
 }
 
 /// Critical values of one or several keys, moved together.
@@ -105,7 +110,7 @@ pub fn predict(settings: &Settings) -> Prediction {
         generalist: generalist_part(&generalist),
         cues: selection.iter().map(cue_part).collect(),
         best: best_part(&best, settings),
-        verdict: Model::verdict(&selection, better_elsewhere).name(),
+        verdict: Model::verdict(&selection, better_elsewhere),
         critical: None,
     }
 }
@@ -136,7 +141,17 @@ pub fn generalist_of(settings: &Settings) -> Generalist {
 /// What theory needs of a scenario.
 #[must_use]
 pub fn model(settings: &Settings) -> Model {
-    let life = LifeHistory {
+    let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
+    let cues = settings.traits.cues;
+    Model::new(life_history(settings), returns, cues, &compositions(settings))
+        .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
+        .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
+}
+
+/// The life of a scenario's colonies.
+#[must_use]
+pub fn life_history(settings: &Settings) -> LifeHistory {
+    LifeHistory {
         propagule_cells: settings.life.propagule_cells as u64,
         adult_cells: settings.body.adult_cells as u64,
         propagule_cost_eu: settings.life.propagule_cost_eu,
@@ -147,23 +162,52 @@ pub fn model(settings: &Settings) -> Model {
         upkeep_eu_per_h: settings.budget.upkeep_eu_per_h,
         division_cost_eu: settings.budget.division_cost_eu,
         cost_per_unit: settings.traits.cost_per_unit,
-    };
-    let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
-    Model::new(life, returns, settings.traits.cues, &compositions(settings))
-        .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
-        .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
+    }
 }
+
+/// Cells grown in all to learn what bodies are like, where chance decides it.
+const SAMPLED_CELLS: usize = 1 << 18;
+
+/// Fewest and most bodies grown for that.
+const SAMPLED_BODIES: (usize, usize) = (32, 512);
+
+/// Seed of that growth: the same scenario always gets the same prediction.
+const SAMPLING_SEED: u64 = 0;
 
 /// Adult bodies of a scenario with their weights: the one place where theory learns what bodies
 /// are like.
 ///
-/// SEAM: labels are exact, but every cell is taken to lie at the surface, which is right for
-/// bodies of up to 12 cells only. For larger ones sample bodies with joint counts of label and
-/// exposure here. It matters where the exposure cue is on or a task has unequal surface and
-/// interior effects ([`Settings::exposure_matters`]).
+/// Where only labels count and divisions come in rounds they are exact. Where exposure makes a
+/// difference, or division costs vary, chance arranges each body anew: a sample of bodies is grown
+/// (tens to hundreds, always the same), and expectations are means over it.
 #[must_use]
 pub fn compositions(settings: &Settings) -> Compositions {
-    label_compositions(settings.body.adult_cells as u64, settings.life.propagule_cells as u64)
+    let labels_vary =
+        settings.traits.cues.contains(Cue::Lineage) && settings.budget.division_cv > 0.0;
+    if settings.exposure_matters() || labels_vary {
+        sampled_compositions(settings)
+    } else {
+        label_compositions(settings.body.adult_cells as u64, settings.life.propagule_cells as u64)
+    }
+}
+
+fn sampled_compositions(settings: &Settings) -> Compositions {
+    let cells = settings.body.adult_cells;
+    let bodies = (SAMPLED_CELLS / cells).clamp(SAMPLED_BODIES.0, SAMPLED_BODIES.1);
+    let mut growth = Growth::of_clump(settings.life.propagule_cells, cells);
+    let mut rng = Xoshiro256PlusPlus::seed_from_u64(SAMPLING_SEED);
+    // How fast a body grows does not matter to how it lies.
+    let pace = Pace {
+        net_income_eu_per_h: 1.0,
+        division_cost_eu: 1.0,
+        division_cv: settings.budget.division_cv,
+    };
+    let mut grow = |_| {
+        let labels = growth.grow(&pace, f64::INFINITY, &mut rng).labels.to_vec();
+        let kinds = labels.into_iter().zip(growth.exposed());
+        (1.0, Composition::of(kinds.map(|(label, exposed)| (CellKind { label, exposed }, 1.0))))
+    };
+    joined((0..bodies).map(&mut grow))
 }
 
 fn generalist_part(generalist: &Generalist) -> GeneralistPart {
@@ -172,10 +216,10 @@ fn generalist_part(generalist: &Generalist) -> GeneralistPart {
 
 fn cue_part(selection: &CueSelection) -> CuePart {
     CuePart {
-        cue: selection.cue.name(),
+        cue: selection.cue,
         gradient: finite(selection.gradient),
         curvature: finite(selection.curvature),
-        verdict: selection.verdict().name(),
+        verdict: selection.verdict(),
     }
 }
 
@@ -192,7 +236,7 @@ fn best_part(best: &BestProgramme, settings: &Settings) -> BestPart {
         r0: finite(best.r0),
         division_index: best.outcome.division_index,
         soma_fraction: best.outcome.soma_fraction,
-        class: best.outcome.class.name(),
+        class: best.outcome.class,
     }
 }
 

@@ -42,7 +42,8 @@ impl Model {
     /// noise cue's bias. A deterministic search: a coarse grid with all corners, climbs from the
     /// best point of every pattern of signs, the highest of them refined; all that on a sketch of
     /// the model, and the best of it once more on the model itself. Between equals the generalist
-    /// stands. Where a mirror image does as well, noise has positive responsiveness.
+    /// stands; a trait that makes no difference is 0. Where a mirror image does as well, noise has
+    /// positive responsiveness.
     #[must_use]
     pub fn best_programme(&self, generalist: &Generalist) -> BestProgramme {
         let space = TraitSpace::of(self);
@@ -59,7 +60,7 @@ impl Model {
         let top = measured.max_by(|a, b| a.value.total_cmp(&b.value)).map(|summit| {
             let summit = polish(&height, bounds, summit, 0.01, 16);
             let summit = climb(&height, bounds, &summit.at, 0.002, 60);
-            polish(&height, bounds, summit, 2e-4, 40)
+            tidied(polish(&height, bounds, summit, 2e-4, 40), &height)
         });
         let bar = finite_or_lost(libm::log(generalist.r0)) + ROUNDING;
         let programme = match top {
@@ -88,6 +89,19 @@ fn finalists(space: &TraitSpace, height: &impl Fn(&[f64]) -> f64, baseline: f64)
         polish(height, bounds, summit, 1e-3, 150)
     });
     refined.collect()
+}
+
+/// The summit with every trait but the baseline at 0 that may as well be.
+fn tidied(mut summit: Summit, height: &impl Fn(&[f64]) -> f64) -> Summit {
+    for axis in 1..summit.at.len() {
+        let mut at = summit.at.clone();
+        at[axis] = 0.0;
+        let value = height(&at);
+        if value >= summit.value - ROUNDING {
+            summit = Summit { at, value };
+        }
+    }
+    summit
 }
 
 /// The traits that the search varies, as coordinates: baseline, responsivenesses, noise bias.

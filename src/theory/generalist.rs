@@ -30,6 +30,24 @@ const GRID_STEP: f64 = 0.25;
 const EQUAL: f64 = 1e-13;
 
 impl Model {
+    /// Generation time of a population of generalists, h: growth, and the mean age of an adult at
+    /// the birth of its propagules, `1 / m` at the constant hazard `m = m_ext + m0 / V`.
+    ///
+    /// Infinite where the generalist cannot grow up or never dies.
+    #[must_use]
+    pub fn generation_h(&self, generalist: &Generalist) -> f64 {
+        let effect: f64 = self
+            .bodies()
+            .iter()
+            .map(|(weight, body)| weight * body.mean(|kind| self.viability.effect(kind.exposed)))
+            .sum();
+        let viability = effect * self.viability.curve.value(generalist.soma_share);
+        let growth_h = self.life.growth_h(self.life.income_eu_per_h).unwrap_or(f64::INFINITY);
+        let hazard_per_h =
+            self.life.extrinsic_hazard_per_h + self.life.adult_hazard_per_h / viability;
+        growth_h + 1.0 / hazard_per_h
+    }
+
     /// The generalist optimum within +-bound: the best point of a grid over the logit, refined by
     /// a safeguarded Newton search on the exact slope. If no baseline leaves propagules, the one
     /// of soma share 1/2, with R0 = 0.

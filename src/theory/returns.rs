@@ -43,16 +43,6 @@ pub enum CurveError {
         /// The value given.
         value: f64,
     },
-    /// `K^n` leaves the range of numbers, so that the curve cannot be normalised at 1.
-    #[error(
-        "`half` = {half} with `steepness` = {steepness} makes half^steepness too large; lower one"
-    )]
-    TooSteep {
-        /// Half-saturation given.
-        half: f64,
-        /// Steepness given.
-        steepness: f64,
-    },
     /// The points of a table do not make a curve.
     #[error(transparent)]
     Table(#[from] TableError),
@@ -78,13 +68,9 @@ impl ReturnCurve {
     /// The sigmoid curve with half-saturation `half` and steepness `steepness`.
     ///
     /// # Errors
-    /// [`CurveError::NotPositive`] unless both are finite and above 0; [`CurveError::TooSteep`]
-    /// when `half^steepness` exceeds 1e300.
+    /// [`CurveError::NotPositive`] unless both are finite and above 0.
     pub fn sigmoid(half: f64, steepness: f64) -> Result<Self, CurveError> {
         let (half, steepness) = (positive("half", half)?, positive("steepness", steepness)?);
-        if libm::pow(half, steepness) > 1e300 {
-            return Err(CurveError::TooSteep { half, steepness });
-        }
         Ok(Self::Sigmoid { half, steepness })
     }
 
@@ -102,9 +88,7 @@ impl ReturnCurve {
         match self {
             Self::Power { exponent } => libm::pow(x, *exponent),
             Self::Saturating { half } => x * (1.0 + half) / (x + half),
-            Self::Sigmoid { half, steepness } => {
-                hill(x, *half, *steepness) / hill(1.0, *half, *steepness)
-            }
+            Self::Sigmoid { half, steepness } => sigmoid(x, *half, *steepness),
             Self::Table(table) => table.value(x),
         }
     }
@@ -126,9 +110,7 @@ impl ReturnCurve {
                     curvature: -2.0 * scale / (sum * sum * sum),
                 }
             }
-            Self::Sigmoid { half, steepness } => {
-                hill_jet(x, *half, *steepness) * hill(1.0, *half, *steepness).recip()
-            }
+            Self::Sigmoid { half, steepness } => sigmoid_jet(x, *half, *steepness),
             Self::Table(table) => table.jet(x),
         }
     }
@@ -163,26 +145,35 @@ fn monomial(x: f64, p: f64) -> f64 {
     if p == 0.0 { 1.0 } else { libm::pow(x, p) }
 }
 
-fn hill(x: f64, half: f64, steepness: f64) -> f64 {
-    1.0 / (1.0 + libm::pow(half / x, steepness))
+/// `H(x)/H(1) = (1 + K^n) / (1 + (K/x)^n) = x^n (1 + K^-n) / (1 + (x/K)^n)`: the form that no
+/// power of K can drive out of range, for K up to 1 and above.
+fn sigmoid(x: f64, half: f64, steepness: f64) -> f64 {
+    if half <= 1.0 {
+        (1.0 + libm::pow(half, steepness)) / (1.0 + libm::pow(half / x, steepness))
+    } else {
+        let scale = 1.0 + libm::pow(half, -steepness);
+        libm::pow(x, steepness) * scale / (1.0 + libm::pow(x / half, steepness))
+    }
 }
 
-/// With H = x^n/(x^n + K^n): H' = n H (1 - H)/x and H'' = H' (n (1 - 2H) - 1)/x.
-fn hill_jet(x: f64, half: f64, steepness: f64) -> Jet {
+/// For y = H/H(1): y' = n y (1 - H)/x and y'' = y' (n (1 - 2H) - 1)/x.
+fn sigmoid_jet(x: f64, half: f64, steepness: f64) -> Jet {
     let ratio = libm::pow(half / x, steepness);
     if x == 0.0 || ratio.is_infinite() {
-        // H ~ (x/K)^n to leading order; the next term, -(x/K)^2n, counts at n = 1 only.
-        let lead = power_jet(x / half, steepness);
-        let next = if steepness - 1.0 == 0.0 { 2.0 } else { 0.0 };
-        return Jet {
-            value: lead.value,
-            slope: lead.slope / half,
-            curvature: (lead.curvature - next) / (half * half),
-        };
+        return sigmoid_jet_near_zero(x, half, steepness);
     }
-    let (h, rest) = (1.0 / (1.0 + ratio), 1.0 / (1.0 + 1.0 / ratio));
-    let slope = steepness * h * rest / x;
-    Jet { value: h, slope, curvature: slope * (steepness * (rest - h) - 1.0) / x }
+    let value = sigmoid(x, half, steepness);
+    let (reached, rest) = (1.0 / (1.0 + ratio), 1.0 / (1.0 + 1.0 / ratio));
+    let slope = steepness * value * rest / x;
+    Jet { value, slope, curvature: slope * (steepness * (rest - reached) - 1.0) / x }
+}
+
+/// y ~ (1 + K^-n) x^n to leading order; the next term, -(x/K)^n times that, counts at n = 1 only.
+fn sigmoid_jet_near_zero(x: f64, half: f64, steepness: f64) -> Jet {
+    let scale = (1.0 + libm::pow(half, -steepness)).min(f64::MAX);
+    let lead = power_jet(x, steepness) * scale;
+    let next = if steepness - 1.0 == 0.0 { 2.0 * scale / half } else { 0.0 };
+    Jet { curvature: lead.curvature - next, ..lead }
 }
 
 /// One task's return: the curve, and how a cell's position scales it.

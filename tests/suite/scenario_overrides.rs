@@ -45,10 +45,10 @@ fn the_last_of_several_wins() {
 #[test]
 fn numbers_are_passed_exactly() {
     for value in [0.1 + 0.2, 1.0, 1e-3, 19.999_999_999_999_996] {
-        let settings = with(&[Override::number("returns.viability.exponent", value)]);
+        let settings = with(&[Override::number("--set", "returns.viability.exponent", value)]);
         assert_eq!(settings.returns.viability.curve, ReturnCurve::Power { exponent: value });
     }
     // Negative numbers and those that are not finite reach the checks as well.
-    let wrong = [Override::number("returns.viability.exponent", f64::NAN)];
+    let wrong = [Override::number("--set", "returns.viability.exponent", f64::NAN)];
     assert!(Settings::from_toml_str("pond", POND, &wrong).is_err());
 }

@@ -75,9 +75,9 @@ proptest! {
     ) {
         let overrides = [
             Override::seed(seed),
-            Override::number("life.adult_hazard_per_h", hazard),
-            Override::number("returns.fecundity.exponent", exponent),
-            Override::number("traits.start.noise", start),
+            Override::number("--set", "life.adult_hazard_per_h", hazard),
+            Override::number("--set", "returns.fecundity.exponent", exponent),
+            Override::number("--set", "traits.start.noise", start),
         ];
         let settings = read("title = 'x'", &overrides).expect("all in range");
         prop_assert_eq!(settings.seed, seed);

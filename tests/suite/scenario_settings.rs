@@ -110,6 +110,27 @@ fn settings_survive_being_spelled_out() {
 }
 
 #[test]
+fn every_curve_is_read_and_spelled_out() {
+    let curve = |viability: &str| {
+        let text = format!("title = 'x'\n[returns]\nviability = {{ {viability} }}");
+        let settings = read(&text).unwrap_or_else(|error| panic!("{viability}: {error:?}"));
+        assert_eq!(read(&settings.to_toml()).expect("spelled out"), settings);
+        settings.returns.viability.curve
+    };
+    let saturating = ReturnCurve::Saturating { half: 0.25 };
+    assert_eq!(curve("curve = 'saturating', half = 0.25"), saturating);
+    let sigmoid = ReturnCurve::Sigmoid { half: 0.5, steepness: 4.0 };
+    assert_eq!(curve("curve = 'sigmoid'"), sigmoid);
+    let points = [[0.0, 0.1], [0.5, 0.1], [2.0, 1.5]];
+    let table = ReturnCurve::table(&points).expect("a curve");
+    assert_eq!(curve("curve = 'table', points = [[0, 0.1], [0.5, 0.1], [2, 1.5]]"), table);
+    let steep = "title='x'\n[returns.viability]\ncurve='sigmoid'\nhalf=1e6\nsteepness=100";
+    let steep = faults(steep);
+    assert_eq!(steep.len(), 1);
+    assert!(matches!(steep[0].kind, FaultKind::Curve { .. }), "{steep:?}");
+}
+
+#[test]
 fn every_key_is_spelled_out() {
     let spelled: Vec<_> = Settings::example("x").spelled_out();
     for entry in somadawn::scenario::registry::entries() {

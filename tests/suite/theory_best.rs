@@ -6,7 +6,7 @@
 use approx::assert_relative_eq;
 use somadawn::theory::lineage::label_compositions;
 use somadawn::theory::{
-    BodyClass, CellKind, Composition, Cue, Model, Programme, TaskReturn, closed_forms,
+    BodyClass, CellKind, Composition, Cue, LifeHistory, Model, Programme, TaskReturn, closed_forms,
 };
 
 use crate::theory_models::{bare_life, only, power, random_fates, rows, unbounded};
@@ -85,6 +85,23 @@ fn lineage_beats_luck() {
     assert_relative_eq!(best.r0 / 8.0, 0.25, max_relative = 1e-9);
     assert_relative_eq!(best.outcome.division_index, 1.0, max_relative = 1e-9);
     assert_eq!(best.outcome.class, BodyClass::Complete);
+    assert_eq!(best.programme.responsiveness[Cue::Noise.index()], 0.0, "{best:?}");
+    assert_eq!(best.programme.noise_bias, 0.0);
+}
+
+/// Responsiveness that costs and does not pay is given up altogether.
+#[test]
+fn a_costly_cue_without_use_is_not_kept() {
+    let kind = |exposed| CellKind { label: 0, exposed };
+    let body = Composition::of([(kind(true), 40.0), (kind(false), 24.0)]);
+    let viability = TaskReturn { interior_effect: 0.1, ..power(1.0) };
+    let cues = only(Cue::Exposure).with(Cue::Noise);
+    let life = LifeHistory { cost_per_unit: 0.001, ..bare_life() };
+    let model = Model::new(life, [viability, power(1.0)], cues, &[(1.0, body)]);
+    let best = model.best_programme(&model.generalist());
+    let [noise, _, exposure, _] = best.programme.responsiveness;
+    assert_eq!(noise, 0.0, "{best:?}");
+    assert!(exposure > 1.0, "{best:?}");
 }
 
 /// Surface work: with linear returns and viability won only at the surface, the best body has

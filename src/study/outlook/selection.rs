@@ -1,8 +1,9 @@
 //! What the outlook needs to know from theory.
 
 use crate::scenario::Settings;
-use crate::theory::Cue;
-use crate::theory::reaction_norm::sigmoid;
+use crate::study::prediction::model;
+use crate::theory::selection::Verdict;
+use crate::theory::{Cue, CueSelection};
 
 /// What theory says of the generalist: where it is best, what it leaves, and how selection
 /// pulls at each cue's responsiveness there.
@@ -30,11 +31,12 @@ pub struct Pull {
 }
 
 impl Pull {
-    /// Advantage of a mutant one step of standard deviation `sd` away from the generalist,
-    /// `|gradient| sd + max(curvature, 0) sd^2 / 2`.
+    /// Gain in ln R0 of a mutant one step `sd` further from the generalist than `start`,
+    /// `(|gradient| + max(curvature, 0) start) sd + max(curvature, 0) sd^2 / 2`.
     #[must_use]
-    pub fn advantage(&self, sd: f64) -> f64 {
-        self.gradient.abs() * sd + self.curvature.max(0.0) * sd * sd / 2.0
+    pub fn advantage(&self, start: f64, sd: f64) -> f64 {
+        let curvature = self.curvature.max(0.0);
+        (self.gradient.abs() + curvature * start) * sd + curvature * sd * sd / 2.0
     }
 
     /// Generations in which a responsiveness grows from `start` to `goal` at the rate
@@ -54,33 +56,20 @@ impl Pull {
     }
 }
 
-/// Steps of the grid on which the best generalist is looked for.
-const GRID: u32 = 400;
-
 impl Selection {
-    /// The best generalist of `settings`, its soma share within `sigmoid(+-bound)`.
-    ///
-    /// The pulls are those of theory's prediction, which is not joined yet: they are empty, so
-    /// neither drift nor lack of time is warned of.
+    /// What theory says of the generalist of `settings`.
     #[must_use]
     pub fn of(settings: &Settings) -> Self {
-        let r0 = |logit: f64| super::generalist_r0(settings, sigmoid(logit));
-        let bound = settings.traits.bound;
-        let at = |step: u32| bound * (2.0 * f64::from(step) / f64::from(GRID) - 1.0);
-        let best = (0..=GRID).max_by(|a, b| r0(at(*a)).total_cmp(&r0(at(*b)))).unwrap_or(GRID / 2);
-        let width = 2.0 * bound / f64::from(GRID);
-        let logit = golden_maximum(r0, at(best) - width, at(best) + width);
-        let logit = logit.clamp(-bound, bound);
-        Self { soma_share: sigmoid(logit), r0: r0(logit), pulls: Vec::new() }
+        let model = model(settings);
+        let generalist = model.generalist();
+        let pulls = model.selection_at(&generalist).iter().map(pull).collect();
+        Self { soma_share: generalist.soma_share, r0: generalist.r0, pulls }
     }
 }
 
-/// Where `f`, which has one maximum between `low` and `high`, is greatest.
-fn golden_maximum(f: impl Fn(f64) -> f64, mut low: f64, mut high: f64) -> f64 {
-    let part = 2.0 / (1.0 + libm::sqrt(5.0));
-    for _ in 0..80 {
-        let (a, b) = (high - part * (high - low), low + part * (high - low));
-        if f(a) < f(b) { low = a } else { high = b }
-    }
-    f64::midpoint(low, high)
+fn pull(selection: &CueSelection) -> Pull {
+    let favoured =
+        matches!(selection.verdict(), Verdict::FavouredAtOnce | Verdict::FavouredByDisruption);
+    let CueSelection { cue, gradient, curvature, .. } = *selection;
+    Pull { cue, gradient, curvature, favoured }
 }

@@ -26,16 +26,10 @@ fn interior_cells_of_whole_balls() {
     assert_relative_eq!(interior_share(13), 1.0 / 13.0);
     assert_relative_eq!(interior_share(55), 13.0 / 55.0);
     assert_relative_eq!(interior_share(1), 0.0);
-}
-
-#[test]
-fn radius_is_that_of_the_volume() {
-    // pi / sqrt 18 of the volume is filled by spheres of diameter d: n spheres of diameter d
-    // have the volume of the body times the packing fraction.
-    let (n, d) = (100_000_usize, 10.0);
-    let filled = std::f64::consts::PI / 18_f64.sqrt();
-    let expected = 0.5 * d * (n as f64 / filled).cbrt();
-    assert_relative_eq!(body_radius_um(n, d), expected, max_relative = 1e-12);
+    // 64 cells: of the 24 sites of the fifth shell 9 are taken at random. At least the inner 13
+    // stay interior, and at most 42 sites have all neighbours within six shells.
+    let share = 64.0 * interior_share(64);
+    assert!((13.0..43.0).contains(&share), "{share}");
 }
 
 #[test]
@@ -45,7 +39,8 @@ fn times_follow_the_life_cycle() {
     let outlook = Outlook::of(&settings(&[]), &selection(400.0, &[]), 1);
     assert_relative_eq!(outlook.time.growth_h, 48.0);
     assert_relative_eq!(outlook.time.generation_h, 148.0);
-    let sized = |n: &str, p: &str| growth_h(&settings(&[n, p]));
+    let sized =
+        |n: &str, p: &str| Outlook::of(&settings(&[n, p]), &selection(5.0, &[]), 1).time.growth_h;
     assert_relative_eq!(sized("body.adult_cells=65", "life.propagule_cells=1"), 56.0);
     assert_relative_eq!(sized("body.adult_cells=64", "life.propagule_cells=64"), 0.0);
     assert_relative_eq!(sized("body.adult_cells=9", "life.propagule_cells=4"), 16.0);

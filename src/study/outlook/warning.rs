@@ -2,15 +2,20 @@
 
 use serde::Serialize;
 
-use super::{BodyOutlook, Selection};
+use super::{BodyOutlook, Selection, TimeOutlook};
 use crate::scenario::Settings;
-use crate::theory::{Cue, TaskReturn};
+use crate::scenario::settings::Tick;
+use crate::theory::Cue;
 
 /// Body size under which patterned differentiation is not known in nature, cells.
 const SMALL_BODY_CELLS: usize = 1000;
 
 /// Body diameter under which patterned differentiation is not known in nature, um.
 const SMALL_BODY_UM: f64 = 500.0;
+
+/// Longest tick as a share of a generation: a vacant site waits half a tick longer than it would,
+/// which must not change an expected value by more than 1 %.
+const LONGEST_TICK: f64 = 0.02;
 
 /// Something that may disappoint.
 #[derive(Debug, Clone, PartialEq)]
@@ -39,11 +44,11 @@ pub enum Warning {
         /// Its expected lifetime propagules.
         r0: f64,
     },
-    /// Selection on the first steps towards differentiation is weaker than drift.
+    /// Selection on steps towards differentiation is weaker than drift.
     DriftDominates {
         /// Sites.
         sites: usize,
-        /// Advantage of a typical first step.
+        /// Gain in ln R0 of a typical step.
         advantage: f64,
     },
     /// Selection needs longer than a replicate lasts.
@@ -59,6 +64,13 @@ pub enum Warning {
         censuses: u64,
         /// Censuses in a row that an onset needs.
         needed: u32,
+    },
+    /// Settlement is batched over so long that it bends results.
+    TickTooLong {
+        /// The tick, h.
+        tick_h: f64,
+        /// The generalist's generation time, h.
+        generation_h: f64,
     },
 }
 
@@ -85,6 +97,7 @@ impl Warning {
             Self::DriftDominates { .. } => "drift-dominates",
             Self::TooFewGenerations { .. } => "too-few-generations",
             Self::OnsetCannotBeConfirmed { .. } => "onset-cannot-be-confirmed",
+            Self::TickTooLong { .. } => "tick-too-long",
         }
     }
 
@@ -113,7 +126,7 @@ impl Warning {
                  dies out"
             ),
             Self::DriftDominates { sites, advantage } => format!(
-                "a first step towards differentiation gains {advantage:.1e}, less than drift \
+                "a step towards differentiation gains {advantage:.1e} in ln R0, less than drift \
                  moves in {sites} sites (1/N = {:.1e})",
                 1.0 / *sites as f64
             ),
@@ -125,6 +138,10 @@ impl Warning {
             Self::OnsetCannotBeConfirmed { censuses, needed } => format!(
                 "a replicate takes {censuses} censuses, but an onset is confirmed by {needed} in \
                  a row"
+            ),
+            Self::TickTooLong { tick_h, generation_h } => format!(
+                "settlement is batched over {tick_h} h, more than a 50th of the generation time \
+                 of {generation_h:.3e} h, so vacant sites wait too long"
             ),
         }
     }
@@ -150,6 +167,7 @@ impl Warning {
             Self::OnsetCannotBeConfirmed { .. } => {
                 "raise run.generations, or lower run.census_every or onset.sustained_censuses"
             }
+            Self::TickTooLong { .. } => "lower run.tick_h, or leave it \"auto\"",
         }
     }
 }
@@ -162,6 +180,7 @@ fn rounded_up(x: f64) -> String {
 pub(super) fn warnings(
     settings: &Settings,
     body: &BodyOutlook,
+    time: &TimeOutlook,
     selection: &Selection,
 ) -> Vec<Warning> {
     let mut warnings = body_warnings(settings, body);
@@ -174,17 +193,19 @@ pub(super) fn warnings(
     if censuses < u64::from(needed) {
         warnings.push(Warning::OnsetCannotBeConfirmed { censuses, needed });
     }
+    let generation_h = time.generation_h;
+    if let Tick::Hours(tick_h) = settings.run.tick
+        && tick_h > LONGEST_TICK * generation_h
+    {
+        warnings.push(Warning::TickTooLong { tick_h, generation_h });
+    }
     warnings
 }
 
 fn body_warnings(settings: &Settings, body: &BodyOutlook) -> Vec<Warning> {
     let cues = settings.traits.cues;
     let mut warnings = Vec::new();
-    let differs = |task: &TaskReturn| task.surface_effect.total_cmp(&task.interior_effect).is_ne();
-    let returns = &settings.returns;
-    let exposure_matters =
-        cues.contains(Cue::Exposure) || differs(&returns.viability) || differs(&returns.fecundity);
-    if exposure_matters && body.interior_share <= 0.0 {
+    if settings.exposure_matters() && body.interior_share <= 0.0 {
         warnings.push(Warning::NoInteriorCell { cells: body.cells });
     }
     for cue in cues.iter() {
@@ -214,18 +235,20 @@ fn why_constant(cue: Cue, settings: &Settings, body: &BodyOutlook) -> Option<&'s
     }
 }
 
-/// Drift or lack of time, where theory finds some cue favoured.
+/// Drift or lack of time, where theory finds some cue favoured. Both are judged from where drift
+/// alone takes a responsiveness, as disruptive selection is weak at the generalist itself.
 fn selection_warning(settings: &Settings, selection: &Selection) -> Option<Warning> {
     let traits = &settings.traits;
     let (sites, sd) = (settings.habitat.sites as f64, traits.mutation_sd);
     let favoured = || selection.pulls.iter().filter(|pull| pull.favoured);
-    let advantage = favoured().map(|pull| pull.advantage(sd)).max_by(f64::total_cmp)?;
+    // Neutral variance of an unbounded trait in overlapping generations, and at the same time
+    // the rate of its evolution per unit of d ln R0/dg: N mu sd^2 / 2.
+    let rate = sites * traits.mutation_probability * sd * sd / 2.0;
+    let start = libm::sqrt(rate).max(sd);
+    let advantage = favoured().map(|pull| pull.advantage(start, sd)).max_by(f64::total_cmp)?;
     if sites * advantage < 1.0 {
         return Some(Warning::DriftDominates { sites: settings.habitat.sites, advantage });
     }
-    // Neutral spread of an unbounded trait in overlapping generations: N mu sd^2 / 2.
-    let rate = sites * traits.mutation_probability * sd * sd / 2.0;
-    let start = libm::sqrt(rate).max(sd);
     let goal = responsiveness_at(settings.onset.index).min(traits.bound);
     let needed =
         favoured().map(|pull| pull.generations(start, goal, rate)).min_by(f64::total_cmp)?;

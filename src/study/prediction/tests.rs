@@ -67,13 +67,16 @@ fn r0_has_the_units_of_the_scenario() {
 #[test]
 fn verdicts_follow_the_exponents() {
     let verdict = |a: f64, c: f64, cues: &[Cue]| predict(&settings(a, c, cues)).verdict;
-    assert_eq!(verdict(1.5, 1.5, &[Cue::Noise]), "favoured by disruption");
-    assert_eq!(verdict(0.8, 0.8, &[Cue::Noise]), "not favoured locally");
+    assert_eq!(verdict(1.5, 1.5, &[Cue::Noise]).name(), "favoured by disruption");
+    assert_eq!(verdict(0.8, 0.8, &[Cue::Noise]).name(), "not favoured locally");
     // Between 1.01136 (global) and 1.01587 (local) for 64 cells.
-    assert_eq!(verdict(1.0136, 1.0136, &[Cue::Noise]), "valley");
-    assert_eq!(verdict(3.0, 0.4, &[Cue::Noise]), "valley");
-    assert_eq!(verdict(1.0136, 1.0136, &[Cue::Noise, Cue::Lineage]), "favoured by disruption");
-    assert_eq!(verdict(0.8, 0.8, &[]), "not favoured locally");
+    assert_eq!(verdict(1.0136, 1.0136, &[Cue::Noise]).name(), "valley");
+    assert_eq!(verdict(3.0, 0.4, &[Cue::Noise]).name(), "valley");
+    assert_eq!(
+        verdict(1.0136, 1.0136, &[Cue::Noise, Cue::Lineage]).name(),
+        "favoured by disruption"
+    );
+    assert_eq!(verdict(0.8, 0.8, &[]).name(), "not favoured locally");
 }
 
 #[test]
@@ -97,7 +100,7 @@ fn the_document_has_exactly_the_promised_form() {
     let prediction = predict(&scenario);
     assert_eq!(prediction.generalist.r0, Some(0.0));
     assert_eq!((prediction.cues[0].gradient, prediction.cues[0].curvature), (None, None));
-    assert_eq!(prediction.verdict, "not favoured locally");
+    assert_eq!(prediction.verdict.name(), "not favoured locally");
 }
 
 #[test]

@@ -1,5 +1,7 @@
 //! Return curves: normalised, monotone, differentiated right, and strict about their parameters.
 
+#![expect(clippy::float_cmp, reason = "values that are exact by construction")]
+
 use approx::assert_relative_eq;
 use proptest::prelude::*;
 
@@ -9,7 +11,7 @@ fn any_curve() -> impl Strategy<Value = ReturnCurve> {
     prop_oneof![
         (0.05..6.0).prop_map(|exponent| ReturnCurve::Power { exponent }),
         (0.01..10.0).prop_map(|half| ReturnCurve::Saturating { half }),
-        (0.05..3.0, 0.3..8.0)
+        (0.01..30.0, 0.3..20.0)
             .prop_map(|(half, steepness)| ReturnCurve::Sigmoid { half, steepness }),
         proptest::collection::vec((0.05..0.7, 0.0..1.0), 1..7).prop_map(|steps| {
             let mut points = vec![[0.0, 0.0]];
@@ -129,8 +131,19 @@ fn illegal_parameters_are_named_with_their_value() {
         assert!(ReturnCurve::sigmoid(value, 2.0).is_err());
         assert!(ReturnCurve::sigmoid(2.0, value).is_err());
     }
-    let error = ReturnCurve::sigmoid(1e9, 100.0).expect_err("overflows");
-    assert_eq!(error, CurveError::TooSteep { half: 1e9, steepness: 100.0 });
+}
+
+/// Far above its half-saturation a sigmoid is a power curve, far below it is flat at 1.
+#[test]
+fn a_sigmoid_has_a_value_however_extreme_its_parameters() {
+    let steep = ReturnCurve::sigmoid(1e6, 100.0).expect("legal");
+    assert_relative_eq!(steep.value(0.9), 0.9_f64.powi(100), max_relative = 1e-12);
+    assert_relative_eq!(steep.jet(0.9).slope, 100.0 * 0.9_f64.powi(99), max_relative = 1e-12);
+    assert_eq!(steep.jet(0.0), Jet::constant(0.0));
+    let early = ReturnCurve::sigmoid(1e-6, 100.0).expect("legal");
+    assert_eq!(early.value(0.5), 1.0);
+    assert_eq!(early.value(0.0), 0.0);
+    assert_eq!(early.jet(0.0), Jet::constant(0.0));
 }
 
 #[test]

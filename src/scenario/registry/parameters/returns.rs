@@ -24,6 +24,13 @@ pub(crate) struct TaskParameters {
     pub(crate) interior_effect: Parameter<Real>,
 }
 
+impl TaskParameters {
+    /// Paths of the keys that shape the curve.
+    pub(crate) const fn paths(&self) -> [&'static str; 5] {
+        [self.curve.path, self.exponent.path, self.half.path, self.steepness.path, self.points.path]
+    }
+}
+
 const fn only_for(words: &'static [&'static str]) -> Condition {
     Condition { sibling: "curve", words }
 }
