@@ -23,7 +23,7 @@ fn assert_push_is_sound(lattice: &Lattice, newcomer: Newcomer, before: &[u32], a
     assert_eq!(apart(newcomer.beside, after[newcomer.cell as usize]), 1, "not next to the mother");
     let moved = before.iter().zip(after).filter(|(from, to)| from != to);
     assert!(moved.clone().all(|(from, to)| apart(*from, *to) == 1), "a cell moved too far");
-    let shortest = apart(newcomer.beside, newcomer.target) as usize;
+    let shortest = apart(newcomer.beside, newcomer.target).unsigned_abs() as usize;
     assert_eq!(moved.count() + 1, shortest, "the path was not a shortest one");
     let mut filled: Vec<u32> = after.to_vec();
     let mut expected: Vec<u32> = before.iter().copied().chain([newcomer.target]).collect();
