@@ -155,11 +155,18 @@ fn extreme_curves() {
         let summary = lives(&desk, settings);
         assert!(summary["prediction"]["verdict"].is_string(), "{why}");
     }
+    // Lives of 1e300 h, and more propagules than can be counted.
+    lives(
+        &desk,
+        &["returns.viability.curve=table", "returns.viability.points=[[0, 0], [1, 1e300]]"],
+    );
+    for points in ["[[0, 0], [1, 1e300]]", "[[0, 0], [1e-300, 1]]"] {
+        let points = format!("returns.fecundity.points={points}");
+        lives(&desk, &["returns.fecundity.curve=table", &points]);
+    }
     for settings in [
         &["returns.viability.exponent=20", "returns.fecundity.exponent=20"][..],
         &["returns.viability.curve=sigmoid", "returns.viability.steepness=100"],
-        &["returns.viability.curve=table", "returns.viability.points=[[0, 0], [1, 1e300]]"],
-        &["returns.fecundity.curve=table", "returns.fecundity.points=[[0, 0], [1e-300, 1]]"],
     ] {
         evolve(&desk, settings);
     }

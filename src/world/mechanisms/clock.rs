@@ -11,7 +11,9 @@ use crate::world::resources::{Calendar, Clock, Vacancies};
 pub fn advance_clock(vacancies: Res<Vacancies>, calendar: Res<Calendar>, mut clock: ResMut<Clock>) {
     let next_h = calendar.next_event_h().filter(|_| vacancies.0.is_empty());
     if let Some(next_h) = next_h {
-        clock.ticks = clock.ticks.max((next_h / clock.tick_h) as u64);
+        #[expect(clippy::cast_sign_loss, reason = "events lie after hour 0")]
+        let whole = (next_h / clock.tick_h) as u64;
+        clock.ticks = clock.ticks.max(whole);
     }
     // Products, not sums: no rounding accumulates over millions of ticks.
     clock.from_h = (clock.ticks as f64 * clock.tick_h).max(clock.now_h);
