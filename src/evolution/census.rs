@@ -132,6 +132,7 @@ mod tests {
     use crate::theory::Cue;
 
     #[test]
+    #[expect(clippy::float_cmp, reason = "values are copied, not computed")]
     fn traits_stand_in_the_order_of_their_columns() {
         let mut programme = Programme::generalist(1.0);
         for cue in Cue::ALL {

@@ -35,7 +35,7 @@ pub struct ReplicateRow {
     pub end_generation: f64,
     /// Division index D at the last census with adults, 0 to 1.
     pub division_index: Option<f64>,
-    /// Mean soma share z at that census.
+    /// Share of soma cells at that census.
     pub soma_fraction: Option<f64>,
     /// Commonest class of its bodies at that census.
     pub class: Option<BodyClass>,

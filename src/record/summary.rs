@@ -57,7 +57,7 @@ pub struct FinalSummary {
     pub division_index_low: Option<f64>,
     /// Upper limit, cut at 1.
     pub division_index_high: Option<f64>,
-    /// Mean soma share z.
+    /// Mean share of soma cells.
     pub soma_fraction: Option<f64>,
     /// Commonest class of bodies; of equally common ones the least differentiated.
     pub class: Option<BodyClass>,

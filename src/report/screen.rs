@@ -160,7 +160,9 @@ fn onset(report: &EvolveReport<'_>) -> String {
 fn division_index(summary: &Summary) -> String {
     let last = &summary.last;
     let Some(index) = last.division_index else {
-        return "not known: no population was left at the end".to_owned();
+        let dead = summary.extinct == summary.replicates;
+        let left = if dead { "population was" } else { "adult colony was" };
+        return format!("not known: no {left} left at the end");
     };
     let interval = match (last.division_index_low, last.division_index_high) {
         (Some(low), Some(high)) => {
@@ -168,9 +170,8 @@ fn division_index(summary: &Summary) -> String {
         }
         _ => String::new(),
     };
-    let soma = last
-        .soma_fraction
-        .map_or_else(String::new, |soma| format!("; mean soma share {}", share(soma)));
+    let soma =
+        last.soma_fraction.map_or_else(String::new, |soma| format!("; soma cells {}", share(soma)));
     format!("{} at the end{interval}{soma}", share(index))
 }
 

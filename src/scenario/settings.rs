@@ -154,7 +154,7 @@ pub struct Run {
 /// How long settlement is batched.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Tick {
-    /// A 200th of the generalist's generation time.
+    /// A 100th of the generalist's generation time.
     Auto,
     /// This many hours.
     Hours(f64),

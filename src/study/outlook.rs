@@ -101,7 +101,7 @@ impl Outlook {
     pub fn of(settings: &Settings, selection: &Selection, threads: usize) -> Self {
         let body = body(settings);
         let time = time(settings, selection.soma_share, body.interior_share);
-        let warnings = warning::warnings(settings, &body, selection);
+        let warnings = warning::warnings(settings, &body, &time, selection);
         Self {
             title: settings.title.clone(),
             transport: None,

@@ -17,6 +17,11 @@ use super::placement::{Crowd, Newcomer};
 /// Least cost of a division as a share of its mean, where costs vary.
 const LEAST_COST_SHARE: f64 = 0.01;
 
+/// Label of a cell that its last division made a mother.
+const MOTHER: i8 = -1;
+/// Label of a cell that its last division made a daughter.
+const DAUGHTER: i8 = 1;
+
 /// How fast cells save and what a division takes.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Pace {
@@ -160,7 +165,15 @@ impl Growth {
             let random = rng.next_u64();
             let (pick, _) = below(lower_half(random), before - turn);
             self.mothers.swap(turn, turn + pick);
-            self.divide(self.mothers[turn], upper_half(random));
+            self.place_daughter(self.mothers[turn], upper_half(random));
+        }
+        self.labels[before..self.held].fill(DAUGHTER);
+        if dividing == before {
+            self.labels[..before].fill(MOTHER);
+            return;
+        }
+        for &mother in &self.mothers[..dividing] {
+            self.labels[mother as usize] = MOTHER;
         }
         for &idle in &self.mothers[dividing..] {
             self.reserves_eu[idle as usize] = pace.division_cost_eu as f32;
@@ -182,7 +195,9 @@ impl Growth {
             }
             now_h = next.at_h;
             let daughter = self.held as u32;
-            self.divide(next.mother, upper_half(rng.next_u64()));
+            self.place_daughter(next.mother, upper_half(rng.next_u64()));
+            self.labels[next.mother as usize] = MOTHER;
+            self.labels[daughter as usize] = DAUGHTER;
             for cell in [next.mother, daughter] {
                 self.divided_at_h[cell as usize] = now_h;
                 queue.push(Reverse(Division::drawn(cell, now_h, pace, rng)));
@@ -194,20 +209,19 @@ impl Growth {
         now_h
     }
 
-    /// Divides `mother`: the daughter goes in next to it, labels are set, reserves are spent.
-    fn divide(&mut self, mother: u32, random: u32) {
+    /// Puts a daughter of `mother` in next to it.
+    #[inline]
+    fn place_daughter(&mut self, mother: u32, random: u32) {
         let daughter = self.held;
         let (target, ties) = self.draw_target(daughter, random);
-        let newcomer =
-            Newcomer { cell: daughter as u32, mother: self.places[mother as usize], target, ties };
+        let beside = self.places[mother as usize];
+        let newcomer = Newcomer { cell: daughter as u32, mother, beside, target, ties };
         self.crowd.push_in(&self.lattice, newcomer, &mut self.places);
-        self.labels[mother as usize] = -1;
-        self.labels[daughter] = 1;
-        self.reserves_eu[mother as usize] = 0.0;
         self.held += 1;
     }
 
     /// A random vacant site of those nearest the centre, and random bits to spare.
+    #[inline]
     fn draw_target(&mut self, held: usize, random: u32) -> (u32, u32) {
         let (choices, first) = self.open_shell(held);
         let (pick, ties) = below(random, choices);

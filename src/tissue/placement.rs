@@ -2,21 +2,34 @@
 //! the vacant site nearest the body's centre.
 
 use super::lattice::Lattice;
-use super::route::{Routes, StepTable, step_table};
+use super::route::{Compass, PACE, Routes};
 
 /// Marks a place of the grid that holds no cell.
-pub(super) const VACANT: u32 = u32::MAX;
+const VACANT: u32 = u32::MAX;
+
+/// The bit by which [`VACANT`] differs from every cell's number.
+const VACANT_BIT: u32 = 31;
 
 /// Who stands where in the body that is growing.
 #[derive(Debug, Clone)]
 pub(super) struct Crowd {
     occupant: Vec<u32>,
+    compass: Compass,
     routes: Routes,
-    /// Scratch of the search that serves where no straight path stays inside the body.
+    /// Scratch of the searches that serve where no straight path stays inside the body.
+    way: Vec<u32>,
     came_from: Vec<u32>,
-    /// The path of the push at hand, `length` places from the one next to the mother to the target.
-    path: Vec<u32>,
-    length: usize,
+    /// The path of the push at hand, `paces` long, to the target. It may linger on the mother's
+    /// place before it sets out.
+    path: Vec<[Stop; PACE]>,
+    paces: usize,
+}
+
+/// A place on a path and who stands there.
+#[derive(Debug, Clone, Copy)]
+struct Stop {
+    place: u32,
+    there: u32,
 }
 
 /// A daughter to be placed.
@@ -24,8 +37,10 @@ pub(super) struct Crowd {
 pub(super) struct Newcomer {
     /// Its number.
     pub(super) cell: u32,
-    /// The place of its mother.
+    /// The number of its mother.
     pub(super) mother: u32,
+    /// The place of its mother.
+    pub(super) beside: u32,
     /// The empty place that the push ends at.
     pub(super) target: u32,
     /// Random bits that decide between equally short paths.
@@ -34,12 +49,15 @@ pub(super) struct Newcomer {
 
 impl Crowd {
     pub(super) fn on(lattice: &Lattice) -> Self {
+        let stop = Stop { place: VACANT, there: VACANT };
         Self {
             occupant: vec![VACANT; lattice.grid_len()],
+            compass: Compass::on_grid(lattice.strides()),
             routes: Routes::up_to(lattice.span()),
+            way: Vec::new(),
             came_from: Vec::new(),
-            path: vec![VACANT; 2 * lattice.span() + 2],
-            length: 0,
+            path: vec![[stop; PACE]; 2 * lattice.span() / PACE + 1],
+            paces: 0,
         }
     }
 
@@ -63,39 +81,67 @@ impl Crowd {
     /// target by one site; `places` (place of each cell) follows.
     #[inline]
     pub(super) fn push_in(&mut self, lattice: &Lattice, newcomer: Newcomer, places: &mut [u32]) {
-        if !self.go_straight(lattice, newcomer) && !self.go_round(lattice, newcomer) {
-            self.search_path(lattice, newcomer);
+        // While its mother's place is the newcomer's, a path that lingers there does no harm.
+        self.occupant[newcomer.beside as usize] = newcomer.cell;
+        if !self.go_straight(lattice, newcomer) {
+            self.go_round(lattice, newcomer);
         }
         let mut moved = newcomer.cell;
-        for &place in &self.path[..self.length] {
-            places[moved as usize] = place;
-            std::mem::swap(&mut self.occupant[place as usize], &mut moved);
+        for stops in &self.path[..self.paces] {
+            for stop in stops {
+                places[moved as usize] = stop.place;
+                self.occupant[stop.place as usize] = moved;
+                moved = stop.there;
+            }
         }
+        self.occupant[newcomer.beside as usize] = newcomer.mother;
     }
 
     /// Finds the straightest shortest path; `false` where that leaves the body.
     #[inline]
     fn go_straight(&mut self, lattice: &Lattice, newcomer: Newcomer) -> bool {
-        let (legs, steps) = legs_between(lattice, newcomer);
+        let Bearing { legs, order, turns } = bearing(lattice, newcomer);
+        let steps = self.compass.steps(order, turns);
         let kinds = self.routes.between(legs);
-        let mut here = newcomer.mother;
+        let mut here = newcomer.beside;
         let mut gaps = 0;
-        for (place, &kind) in self.path.iter_mut().zip(kinds) {
-            here = here.wrapping_add_signed(steps[usize::from(kind & 7)]);
-            gaps += u32::from(self.occupant[here as usize] == VACANT);
-            *place = here;
+        for (stops, kinds) in self.path.iter_mut().zip(kinds) {
+            for (stop, &kind) in stops.iter_mut().zip(kinds) {
+                here = here.wrapping_add_signed(steps[usize::from(kind & 7)]);
+                let there = self.occupant[here as usize];
+                *stop = Stop { place: here, there };
+                gaps += there >> VACANT_BIT;
+            }
         }
-        self.length = kinds.len();
+        self.paces = kinds.len();
         // The target is a gap of its own.
         gaps == 1
     }
 
-    /// Finds a shortest path step by step through occupied sites; `false` at a dead end.
+    /// Finds a shortest path through occupied sites: step by step, or by searching where that comes
+    /// to a dead end.
     #[cold]
-    fn go_round(&mut self, lattice: &Lattice, newcomer: Newcomer) -> bool {
+    fn go_round(&mut self, lattice: &Lattice, newcomer: Newcomer) {
+        if !self.find_way(lattice, newcomer) {
+            self.search_way(lattice, newcomer);
+        }
+        let lingering = self.way.len().next_multiple_of(PACE) - self.way.len();
+        self.way.splice(..0, std::iter::repeat_n(newcomer.beside, lingering));
+        let (paces, _) = self.way.as_chunks::<PACE>();
+        let stop = |place: u32| Stop { place, there: self.occupant[place as usize] };
+        let (here, longer) = paces.split_at(paces.len().min(self.path.len()));
+        for (stops, places) in self.path.iter_mut().zip(here) {
+            *stops = places.map(stop);
+        }
+        self.path.extend(longer.iter().map(|places| places.map(stop)));
+        self.paces = paces.len();
+    }
+
+    /// Finds a shortest path step by step through occupied sites; `false` at a dead end.
+    fn find_way(&mut self, lattice: &Lattice, newcomer: Newcomer) -> bool {
         let goal = newcomer.target;
-        let mut here = newcomer.mother;
-        self.length = 0;
+        let mut here = newcomer.beside;
+        self.way.clear();
         while here != goal {
             let nearer = lattice.steps_between(here, goal) - 1;
             let next = (0..12)
@@ -105,21 +151,19 @@ impl Crowd {
                         && lattice.steps_between(next, goal) == nearer
                 });
             let Some(next) = next else { return false };
-            self.path[self.length] = next;
-            self.length += 1;
+            self.way.push(next);
             here = next;
         }
         true
     }
 
     /// Breadth-first search through occupied places, shortest inside the body.
-    #[cold]
-    fn search_path(&mut self, lattice: &Lattice, newcomer: Newcomer) {
-        let Newcomer { mother, target, ties, .. } = newcomer;
+    fn search_way(&mut self, lattice: &Lattice, newcomer: Newcomer) {
+        let Newcomer { beside, target, ties, .. } = newcomer;
         self.came_from.clear();
         self.came_from.resize(self.occupant.len(), VACANT);
-        self.came_from[mother as usize] = mother;
-        let mut queue = std::collections::VecDeque::from([mother]);
+        self.came_from[beside as usize] = beside;
+        let mut queue = std::collections::VecDeque::from([beside]);
         while self.came_from[target as usize] == VACANT
             && let Some(here) = queue.pop_front()
         {
@@ -132,42 +176,46 @@ impl Crowd {
                 }
             }
         }
-        let mut found = Vec::new();
+        self.way.clear();
         let mut here = target;
-        while here != mother {
-            found.push(here);
+        while here != beside {
+            self.way.push(here);
             here = self.came_from[here as usize];
         }
-        self.length = found.len();
-        self.path.resize(self.path.len().max(self.length), VACANT);
-        for (place, &step) in self.path.iter_mut().zip(found.iter().rev()) {
-            *place = step;
-        }
+        self.way.reverse();
     }
 }
 
-/// The legs of a displacement in falling order, and the grid difference of each kind of step.
-///
+/// Where a target lies as seen from a mother.
+struct Bearing {
+    /// Absolute coordinate differences in falling order.
+    legs: [usize; 3],
+    /// Which axis has the longer leg, see [`Compass::steps`].
+    order: usize,
+    /// Which axes are walked backwards: bit by axis.
+    turns: usize,
+}
+
 /// Along an axis without difference the leg points outwards, since routes lag on short legs: that is
 /// how a path that must go sideways stays among cells. Equal legs are ordered by the random bits.
 #[inline]
-fn legs_between(lattice: &Lattice, newcomer: Newcomer) -> ([usize; 3], StepTable) {
-    let start = lattice.coordinates(newcomer.mother);
-    let goal = lattice.coordinates(newcomer.target);
-    let strides = lattice.strides();
-    let mut towards = [0_i32; 4];
-    let mut keys = [0_u32; 3];
-    for axis in 0..3 {
-        let (from, to) = (i32::from(start[axis]), i32::from(goal[axis]));
-        let heading = if from == to { to } else { to - from };
-        towards[axis] = if heading < 0 { -strides[axis] } else { strides[axis] };
-        let rank = newcomer.ties >> (2 * axis) & 3;
-        keys[axis] = (to - from).unsigned_abs() << 4 | rank << 2 | axis as u32;
+fn bearing(lattice: &Lattice, newcomer: Newcomer) -> Bearing {
+    let start = lattice.coordinates(newcomer.beside).map(i32::from);
+    let goal = lattice.coordinates(newcomer.target).map(i32::from);
+    let ways = [0, 1, 2].map(|axis| goal[axis] - start[axis]);
+    let turns = [0, 1, 2].map(|axis| {
+        let heading = if ways[axis] == 0 { goal[axis] } else { ways[axis] };
+        usize::from(heading < 0) << axis
+    });
+    let legs = ways.map(i32::unsigned_abs);
+    let [x, y, z] = [0, 1, 2].map(|axis| legs[axis] << 2 | newcomer.ties >> (2 * axis) & 3);
+    let order = usize::from(x >= y) | usize::from(y >= z) << 1 | usize::from(x >= z) << 2;
+    let long = legs[0].max(legs[1]).max(legs[2]);
+    let short = legs[0].min(legs[1]).min(legs[2]);
+    let middle = legs[0] + legs[1] + legs[2] - long - short;
+    Bearing {
+        legs: [long, middle, short].map(|leg| leg as usize),
+        order,
+        turns: turns[0] | turns[1] | turns[2],
     }
-    let [x, y, z] = keys;
-    let (x, y) = (x.max(y), x.min(y));
-    let (y, z) = (y.max(z), y.min(z));
-    let (x, y) = (x.max(y), x.min(y));
-    let legs = [x, y, z].map(|key| (key >> 4) as usize);
-    (legs, step_table([x, y, z].map(|key| towards[(key & 3) as usize])))
 }

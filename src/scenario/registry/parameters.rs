@@ -104,14 +104,14 @@ pub(crate) static PROPAGULE_COST: Parameter<Real> = parameter!(
     "life.propagule_cost_eu",
     "eu",
     "Cost of one propagule (c_p)",
-    Real::above_to(0.0, 1e6),
+    Real::from_to(1e-6, 1e6),
     8.0
 );
 pub(crate) static ADULT_HAZARD: Parameter<Real> = parameter!(
     "life.adult_hazard_per_h",
     "1/h",
     "Hazard of an adult colony of unit viability (m0); viability V divides it",
-    Real::above_to(0.0, 1e6),
+    Real::from_to(1e-9, 1e6),
     0.005
 );
 pub(crate) static EXTRINSIC_HAZARD: Parameter<Real> = parameter!(
@@ -250,8 +250,8 @@ pub(crate) static TICK: Parameter<RealOr> = parameter!(
     "Hours over which settlement is batched",
     RealOr {
         word: "auto",
-        means: "a 200th of the generalist's generation time",
-        number: Real::above_to(0.0, 1e6),
+        means: "a 100th of the generalist's generation time",
+        number: Real::from_to(1e-6, 1e6),
     },
     WordOr::Word
 );

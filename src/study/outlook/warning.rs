@@ -2,8 +2,9 @@
 
 use serde::Serialize;
 
-use super::{BodyOutlook, Selection};
+use super::{BodyOutlook, Selection, TimeOutlook};
 use crate::scenario::Settings;
+use crate::scenario::settings::Tick;
 use crate::theory::Cue;
 
 /// Body size under which patterned differentiation is not known in nature, cells.
@@ -11,6 +12,10 @@ const SMALL_BODY_CELLS: usize = 1000;
 
 /// Body diameter under which patterned differentiation is not known in nature, um.
 const SMALL_BODY_UM: f64 = 500.0;
+
+/// Longest tick as a share of a generation: a vacant site waits half a tick longer than it would,
+/// which must not change an expected value by more than 1 %.
+const LONGEST_TICK: f64 = 0.02;
 
 /// Something that may disappoint.
 #[derive(Debug, Clone, PartialEq)]
@@ -60,6 +65,13 @@ pub enum Warning {
         /// Censuses in a row that an onset needs.
         needed: u32,
     },
+    /// Settlement is batched over so long that it bends results.
+    TickTooLong {
+        /// The tick, h.
+        tick_h: f64,
+        /// The generalist's generation time, h.
+        generation_h: f64,
+    },
 }
 
 /// A warning as it is shown.
@@ -85,6 +97,7 @@ impl Warning {
             Self::DriftDominates { .. } => "drift-dominates",
             Self::TooFewGenerations { .. } => "too-few-generations",
             Self::OnsetCannotBeConfirmed { .. } => "onset-cannot-be-confirmed",
+            Self::TickTooLong { .. } => "tick-too-long",
         }
     }
 
@@ -126,6 +139,10 @@ impl Warning {
                 "a replicate takes {censuses} censuses, but an onset is confirmed by {needed} in \
                  a row"
             ),
+            Self::TickTooLong { tick_h, generation_h } => format!(
+                "settlement is batched over {tick_h} h, more than a 50th of the generation time \
+                 of {generation_h:.3e} h, so vacant sites wait too long"
+            ),
         }
     }
 
@@ -150,6 +167,7 @@ impl Warning {
             Self::OnsetCannotBeConfirmed { .. } => {
                 "raise run.generations, or lower run.census_every or onset.sustained_censuses"
             }
+            Self::TickTooLong { .. } => "lower run.tick_h, or leave it \"auto\"",
         }
     }
 }
@@ -162,6 +180,7 @@ fn rounded_up(x: f64) -> String {
 pub(super) fn warnings(
     settings: &Settings,
     body: &BodyOutlook,
+    time: &TimeOutlook,
     selection: &Selection,
 ) -> Vec<Warning> {
     let mut warnings = body_warnings(settings, body);
@@ -173,6 +192,12 @@ pub(super) fn warnings(
     let needed = settings.onset.sustained_censuses;
     if censuses < u64::from(needed) {
         warnings.push(Warning::OnsetCannotBeConfirmed { censuses, needed });
+    }
+    let generation_h = time.generation_h;
+    if let Tick::Hours(tick_h) = settings.run.tick
+        && tick_h > LONGEST_TICK * generation_h
+    {
+        warnings.push(Warning::TickTooLong { tick_h, generation_h });
     }
     warnings
 }

@@ -4,7 +4,9 @@ use bevy_ecs::prelude::*;
 use rand::RngExt;
 
 use super::only_table;
-use crate::world::components::{Lifespan, Phase, PropaguleStock, Vitals};
+use crate::world::components::{
+    HeadStart, Lifespan, Phase, PropaguleStock, StockRate, StockSince, StockUntil, Vitals,
+};
 use crate::world::draws::exponential;
 use crate::world::resources::{Calendar, Clock, Event, Ledger, Maturing, Random, Rules, Vacancies};
 
@@ -18,14 +20,19 @@ pub fn set_lifespans(
     maturing: Res<Maturing>,
     mut random: ResMut<Random>,
     mut calendar: ResMut<Calendar>,
-    mut colonies: Query<(&mut Vitals, &mut Lifespan, &mut PropaguleStock)>,
+    mut colonies: Query<(&mut Vitals, &mut Lifespan)>,
+    mut stocks: Query<(&mut StockSince, &mut StockUntil, &mut HeadStart, &mut StockRate)>,
 ) {
     if maturing.0.is_empty() {
         return;
     }
-    let (mut vitals, mut lives, mut stocks) = only_table(colonies.contiguous_iter_mut());
+    let (mut vitals, mut lives) = only_table(colonies.contiguous_iter_mut());
     let (vitals, lives) = (vitals.bypass_change_detection(), lives.bypass_change_detection());
-    let stocks = stocks.bypass_change_detection();
+    let (mut since, mut until, mut head_starts, mut rates) =
+        only_table(stocks.contiguous_iter_mut());
+    let (since, until) = (since.bypass_change_detection(), until.bypass_change_detection());
+    let head_starts = head_starts.bypass_change_detection();
+    let rates = rates.bypass_change_detection();
     let life = &rules.0.life;
     for &site in &maturing.0 {
         let here = site as usize;
@@ -33,11 +40,11 @@ pub fn set_lifespans(
             life.extrinsic_hazard_per_h + life.adult_hazard_per_h / vitals[here].viability;
         vitals[here].hazard_per_h = hazard_per_h;
         lives[here].dies_h = lives[here].adult_h + exponential(&mut random.0) / hazard_per_h;
+        since[here] = StockSince(lives[here].adult_h);
+        until[here] = StockUntil(lives[here].dies_h);
+        head_starts[here] = HeadStart(random.0.random::<f64>() - 0.5);
         let income = rules.0.budget.income_eu_per_h;
-        stocks[here] = PropaguleStock {
-            head_start: random.0.random(),
-            per_hour: vitals[here].fecundity * income / life.propagule_cost_eu,
-        };
+        rates[here] = StockRate(vitals[here].fecundity * income / life.propagule_cost_eu);
         calendar.expect_death(Event { at_h: lives[here].dies_h, site });
     }
 }
@@ -48,16 +55,18 @@ pub fn bury_colonies(
     mut calendar: ResMut<Calendar>,
     mut vacancies: ResMut<Vacancies>,
     mut ledger: ResMut<Ledger>,
-    mut colonies: Query<(&mut Phase, &Lifespan, &PropaguleStock)>,
+    mut colonies: Query<(&mut Phase, &StockSince, &StockUntil, &HeadStart, &StockRate)>,
 ) {
     let Some(mut event) = calendar.next_death(clock.now_h) else { return };
-    let (mut phases, lives, stocks) = only_table(colonies.contiguous_iter_mut());
+    let (mut phases, since, until, head_starts, rates) = only_table(colonies.contiguous_iter_mut());
     let phases = phases.bypass_change_detection();
     loop {
         let here = event.site as usize;
-        let life = &lives[here];
         if phases[here] == Phase::Adult {
-            ledger.lifetime_propagules += stocks[here].released_within(life.dies_h - life.adult_h);
+            let (since, until) = (since[here], until[here]);
+            let (head_start, rate) = (head_starts[here], rates[here]);
+            let stock = PropaguleStock { since, until, head_start, rate };
+            ledger.lifetime_propagules += stock.released_between(since.0, until.0);
         }
         phases[here] = Phase::Empty;
         vacancies.0.push(event.site);

@@ -31,6 +31,7 @@ pub fn split_budgets(
     rules: Res<Rules>,
     maturing: Res<Maturing>,
     pool: Res<GenePool>,
+    mut readings: Local<Vec<u8>>,
     mut cells: CellQuery,
     mut colonies: Query<&CueMeans>,
 ) {
@@ -42,19 +43,49 @@ pub fn split_budgets(
     let shares = shares.bypass_change_detection();
     let (budgets, outputs) = (budgets.bypass_change_detection(), outputs.bypass_change_detection());
     let means = only_table(colonies.contiguous_iter_mut());
+    let heeded = Heeded::by(&rules);
     let n = rules.0.body.adult_cells;
     for &site in &maturing.0 {
         let rows = site as usize * n..(site as usize + 1) * n;
+        let cells = draws[rows.clone()].iter().zip(&labels[rows.clone()]);
+        let cells = cells.zip(&exposed[rows.clone()]);
+        readings.clear();
+        readings.extend(cells.map(|((draw, label), surface)| heeded.code(*draw, *label, *surface)));
         let programme = &pool.0[site as usize].programme;
-        let mut fates = Fates::of(&rules, programme, &means[site as usize]);
-        let readings = labels[rows.clone()].iter().zip(&exposed[rows.clone()]);
-        let readings = readings.zip(&draws[rows.clone()]);
+        let fates = fates(&rules, programme, &means[site as usize], &readings);
         let targets = shares[rows.clone()].iter_mut().zip(&mut budgets[rows.clone()]);
         let targets = targets.zip(&mut outputs[rows]);
-        for (((label, surface), draw), ((share, budget), output)) in readings.zip(targets) {
-            let fate = fates.of_cell(*draw, *label, *surface);
+        for (reading, ((share, budget), output)) in readings.iter().zip(targets) {
+            let fate = &fates[usize::from(*reading) % CODES];
             (*share, *budget, *output) = (fate.share, fate.budget, fate.output);
         }
+    }
+}
+
+/// Room for all codes of readings: two bits of noise, two of the label, one of exposure.
+const CODES: usize = 32;
+
+/// Which of the things that a cell reads make a difference to what it does.
+///
+/// A reading is coded in five bits: noise draw + 1, label + 1, exposure; what makes no difference
+/// reads as if it were 0, not divided or interior.
+struct Heeded {
+    label_mask: u8,
+    exposure_mask: u8,
+}
+
+impl Heeded {
+    fn by(rules: &Rules) -> Self {
+        let lineage = rules.0.traits.cues.contains(Cue::Lineage);
+        let mask = |heeded: bool| if heeded { u8::MAX } else { 0 };
+        Self { label_mask: mask(lineage), exposure_mask: mask(rules.0.exposure_matters()) }
+    }
+
+    #[inline]
+    const fn code(&self, draw: NoiseDraw, label: DivisionLabel, surface: Exposed) -> u8 {
+        let label = (label.0 as u8 & self.label_mask).wrapping_add(1);
+        let surface = surface.0 as u8 & self.exposure_mask;
+        (draw.0 as u8).wrapping_add(1) | label << 2 | surface << 4
     }
 }
 
@@ -66,69 +97,35 @@ struct Fate {
     output: Output,
 }
 
-/// Number of distinct readings: three of noise (one unused) by three labels by two of exposure.
-const READINGS: usize = 18;
-
-/// The fates of one colony's cells, worked out as they are met.
-struct Fates<'a> {
-    rules: &'a Rules,
-    programme: &'a Programme,
-    means: &'a CueMeans,
-    income_eu_per_h: f64,
-    label_weight: usize,
-    exposure_weight: usize,
-    known: [Option<Fate>; READINGS],
+/// The fates that go with the codes among `readings`, for cells of one colony.
+fn fates(rules: &Rules, programme: &Programme, means: &CueMeans, readings: &[u8]) -> [Fate; CODES] {
+    let met = readings.iter().fold(0_u32, |met, reading| met | 1 << (reading % CODES as u8));
+    let mut fates = [Fate::default(); CODES];
+    for (code, fate) in (0..).zip(&mut fates).filter(|(code, _)| met >> code & 1 == 1) {
+        let [draw, label] = [code & 3, code >> 2 & 3].map(|sign: u32| f64::from(sign) - 1.0);
+        let surface = code >> 4;
+        let mut cues = [0.0; Cue::COUNT];
+        cues[Cue::Noise.index()] = draw - means.noise;
+        cues[Cue::Lineage.index()] = label - means.lineage;
+        cues[Cue::Exposure.index()] = f64::from(surface) - means.exposure;
+        *fate = Fate::of(rules, programme, &cues, surface == 1);
+    }
+    fates
 }
 
-impl<'a> Fates<'a> {
-    fn of(rules: &'a Rules, programme: &'a Programme, means: &'a CueMeans) -> Self {
-        let cues = rules.0.traits.cues;
+impl Fate {
+    fn of(rules: &Rules, programme: &Programme, cues: &[f64; Cue::COUNT], surface: bool) -> Self {
+        let z = programme.soma_share(cues);
+        let income = rules.taxed_income_eu_per_h(programme);
+        let (soma, germ) = (income * z, income * (1.0 - z));
+        let full = rules.0.budget.income_eu_per_h;
+        let returns = &rules.0.returns;
+        let viability = returns.viability.value(soma / full, surface);
+        let fecundity = returns.fecundity.value(germ / full, surface);
         Self {
-            rules,
-            programme,
-            means,
-            income_eu_per_h: rules.taxed_income_eu_per_h(programme),
-            label_weight: usize::from(cues.contains(Cue::Lineage)),
-            exposure_weight: usize::from(rules.0.exposure_matters()),
-            known: [None; READINGS],
-        }
-    }
-
-    #[inline]
-    fn of_cell(&mut self, draw: NoiseDraw, label: DivisionLabel, surface: Exposed) -> Fate {
-        let reading = (draw.0 + 1) as usize
-            + 3 * self.label_weight * (label.0 + 1) as usize
-            + 9 * self.exposure_weight * usize::from(surface.0);
-        match self.known[reading] {
-            Some(fate) => fate,
-            None => self.work_out(reading, draw, label, surface),
-        }
-    }
-
-    #[cold]
-    fn work_out(
-        &mut self,
-        reading: usize,
-        draw: NoiseDraw,
-        label: DivisionLabel,
-        surface: Exposed,
-    ) -> Fate {
-        let mut cues = [0.0; Cue::COUNT];
-        cues[Cue::Noise.index()] = f64::from(draw.0) - self.means.noise;
-        cues[Cue::Lineage.index()] = f64::from(label.0) - self.means.lineage;
-        cues[Cue::Exposure.index()] = f64::from(u8::from(surface.0)) - self.means.exposure;
-        let z = self.programme.soma_share(&cues);
-        let (soma, germ) = (self.income_eu_per_h * z, self.income_eu_per_h * (1.0 - z));
-        let full = self.rules.0.budget.income_eu_per_h;
-        let returns = &self.rules.0.returns;
-        let viability = returns.viability.value(soma / full, surface.0);
-        let fecundity = returns.fecundity.value(germ / full, surface.0);
-        let fate = Fate {
             share: SomaShare(z as f32),
             budget: Budget { soma_eu_per_h: soma as f32, germ_eu_per_h: germ as f32 },
             output: Output { viability: viability as f32, fecundity: fecundity as f32 },
-        };
-        self.known[reading] = Some(fate);
-        fate
+        }
     }
 }

@@ -47,6 +47,7 @@ pub fn read_cues(
 
 /// +1 with probability `p` to a resolution of 2^-32, else -1, independently for each cell.
 fn draw_noise(draws: &mut [NoiseDraw], p: f64, rng: &mut impl Rng) {
+    #[expect(clippy::cast_sign_loss, reason = "a probability is at least 0")]
     let threshold = (p * 4_294_967_296.0) as u64;
     let sign = |bits: u64| NoiseDraw(if bits < threshold { 1 } else { -1 });
     let (pairs, last) = draws.as_chunks_mut::<2>();

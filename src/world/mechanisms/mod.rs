@@ -1,4 +1,8 @@
 //! One file per mechanism: its systems and how they join the schedule.
+#![allow(
+    clippy::needless_pass_by_value,
+    reason = "a system gets its parameters from the schedule by value"
+)]
 
 pub mod ageing;
 pub mod budgets;

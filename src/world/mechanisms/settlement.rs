@@ -15,8 +15,8 @@ use crate::world::resources::{
 /// Draws which propagules of this tick land on empty sites, and what they inherit.
 ///
 /// Of K propagules released over N sites of which E are empty, Binomial(K, E/N) land on an empty
-/// one: a random sample without replacement, in random order, each on a random one of the E; who
-/// comes second to a site is lost.
+/// one, each on a random one of the E; who comes second to a site is lost. Those that settle are a
+/// random sample of the K without replacement.
 #[expect(clippy::too_many_arguments, reason = "a system names everything it touches")]
 pub fn settle_propagules(
     rules: Res<Rules>,
@@ -35,54 +35,72 @@ pub fn settle_propagules(
         return;
     }
     let landings = landings_on_empty(&rules, &released, &vacancies, &mut random.0);
-    if landings.is_empty() {
+    let taken = take_sites(landings, &mut vacancies, &mut random.0);
+    if taken.is_empty() {
         return;
     }
     let bodies = only_table(cells.contiguous_iter_mut());
     let (lives, vitals) = only_table(colonies.contiguous_iter_mut());
-    let empty = vacancies.0.len();
-    for propagule in landings {
-        let site = vacancies.0[random.0.random_range(0..empty)];
-        if settlers.0.iter().any(|settler| settler.site == site) {
-            continue;
-        }
-        let parent = parent_of(propagule, &released.by_site);
+    let parents = parents(taken.len(), &released, &mut random.0);
+    for (site, parent) in taken.into_iter().zip(parents) {
         let total = vitals[parent].fecundity;
         let genotype = inherited(&rules, &pool, bodies, parent, total, &mut random.0);
         settlers.0.push(Settler { site, genotype });
         ledger.parental_age_h += clock.now_h.min(lives[parent].dies_h) - lives[parent].founded_h;
     }
-    vacancies.0.retain(|site| !settlers.0.iter().any(|settler| settler.site == *site));
     ledger.recent_settlements += settlers.0.len() as u64;
 }
 
-/// Numbers (in 0..K) of the propagules that land on an empty site, in order of arrival.
+/// How many propagules land on an empty site.
 fn landings_on_empty(
     rules: &Rules,
     released: &Released,
     vacancies: &Vacancies,
     rng: &mut impl Rng,
-) -> Vec<u64> {
+) -> u64 {
     let chance = vacancies.0.len() as f64 / rules.0.habitat.sites as f64;
-    let Ok(landing) = Binomial::new(released.total, chance) else { return Vec::new() };
-    let count = landing.sample(rng);
-    index::sample(rng, released.total as usize, count as usize)
-        .into_iter()
-        .map(|propagule| propagule as u64)
-        .collect()
+    Binomial::new(released.total, chance).map_or(0, |landing| landing.sample(rng))
 }
 
-/// The site whose colony released the propagule of this number.
-fn parent_of(propagule: u64, released: &[u32]) -> usize {
-    let mut left = propagule;
-    released
-        .iter()
-        .position(|&count| {
-            let here = left < u64::from(count);
-            left = left.wrapping_sub(u64::from(count));
-            here
-        })
-        .unwrap_or(0)
+/// The empty sites that are settled, which are vacant no longer.
+///
+/// Landings end to matter when every site is settled: a long tick may bring billions.
+fn take_sites(landings: u64, vacancies: &mut Vacancies, rng: &mut impl Rng) -> Vec<u32> {
+    let empty = vacancies.0.len();
+    let mut free = empty;
+    for _ in 0..landings {
+        if free == 0 {
+            break;
+        }
+        // Sites still free come first, so a draw beyond them has met a site that is taken.
+        let landed = rng.random_range(0..empty);
+        if landed < free {
+            free -= 1;
+            vacancies.0.swap(landed, free);
+        }
+    }
+    let taken = vacancies.0.split_off(free);
+    if !taken.is_empty() {
+        vacancies.0.sort_unstable();
+    }
+    taken
+}
+
+/// The parents of `count` propagules drawn from all that were released, in site order; the draw
+/// does not depend on who lands where.
+fn parents(count: usize, released: &Released, rng: &mut impl Rng) -> Vec<usize> {
+    let mut propagules = index::sample(rng, released.total as usize, count).into_vec();
+    propagules.sort_unstable();
+    let mut counts = (0..).zip(&released.by_site);
+    let (mut parent, mut passed) = (0, 0);
+    let parent_of = |propagule: usize| {
+        while passed <= propagule {
+            let Some((site, &count)) = counts.next() else { break };
+            (parent, passed) = (site, passed + count as usize);
+        }
+        parent
+    };
+    propagules.into_iter().map(parent_of).collect()
 }
 
 /// The genotype of a cell of the parent drawn with probability proportional to `b_i`, mutated.

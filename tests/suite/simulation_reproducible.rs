@@ -1,0 +1,90 @@
+//! The same scenario and seed give the same records, whatever the threads, today and tomorrow.
+
+use std::sync::atomic::AtomicBool;
+
+use somadawn::record::{ReplicateRecord, Stage};
+use somadawn::scenario::Settings;
+use somadawn::study::run::{Replicates, Unwatched};
+use somadawn::study::start;
+use somadawn::theory::{Cue, CueSet};
+
+/// All cues, varied division costs, every hazard: a short run in which each draw is made.
+fn scenario() -> Settings {
+    let mut settings = Settings::example("everything at once");
+    settings.seed = 2_024;
+    settings.habitat.sites = 40;
+    settings.body.adult_cells = 30;
+    settings.life.propagule_cells = 2;
+    settings.life.extrinsic_hazard_per_h = 0.001;
+    settings.life.juvenile_hazard_per_h = 0.001;
+    settings.budget.division_cv = 0.2;
+    settings.returns.viability.interior_effect = 0.5;
+    settings.traits.cues = CueSet::EMPTY.with(Cue::Noise).with(Cue::Lineage).with(Cue::Exposure);
+    settings.traits.mutation_probability = 0.2;
+    settings.traits.cost_per_unit = 0.01;
+    settings.run.generations = 30;
+    settings.run.census_every = 5;
+    settings.run.replicates = 9;
+    settings
+}
+
+fn records(settings: &Settings, threads: usize) -> Vec<ReplicateRecord> {
+    let numbers: Vec<u32> = (0..settings.run.replicates).collect();
+    let stop = AtomicBool::new(false);
+    let mut records = Vec::new();
+    Replicates { settings, start: start(settings), threads, stop: &stop, watcher: &Unwatched }
+        .run(&numbers, |record| {
+            records.push(record);
+            Ok(())
+        })
+        .expect("threads can be had and nothing is written");
+    records.sort_by_key(|record| record.row.replicate);
+    records
+}
+
+/// Rows, censuses and sampled bodies, compared in full.
+#[test]
+fn records_do_not_depend_on_the_number_of_threads() {
+    let settings = scenario();
+    let alone = records(&settings, 1);
+    assert_eq!(alone.len(), 9);
+    assert!(alone.iter().all(|record| record.census.len() >= 6 && !record.bodies.is_empty()));
+    for threads in [2, 7] {
+        assert!(records(&settings, threads) == alone, "{threads} threads change the outcome");
+    }
+    assert!(alone[0].census != alone[1].census, "replicates are all the same");
+}
+
+/// Value stability: what these seeds gave when the test was written. A change that alters them alters
+/// results of every run, and is to be named in the changelog.
+#[test]
+fn values_of_fixed_seeds_are_pinned() {
+    let settings = scenario();
+    let found: Vec<String> = records(&settings, 2).iter().take(2).map(digest).collect();
+    insta::assert_snapshot!(found.join("\n"));
+}
+
+/// The last census and the first body of a replicate, every digit.
+fn digest(record: &ReplicateRecord) -> String {
+    let last = record.census.last().expect("a census");
+    let end = record.bodies.iter().filter(|body| body.stage == Stage::End);
+    let cells: Vec<String> = end
+        .take(5)
+        .map(|c| format!("  {} {} {} {}", c.x_um, c.y_um, c.soma_share, c.label))
+        .collect();
+    format!(
+        "replicate {}, seed {}\nend {:?} h {:?}\nD {:?} mean z {:?}\nparental age {:?}\n\
+         traits {:?}\nvariances {:?}\nfitness {:?}\n{}",
+        record.row.replicate,
+        record.row.seed,
+        record.row.end_generation,
+        last.time_h,
+        record.row.division_index,
+        last.mean_soma_share,
+        last.parental_age_h,
+        last.trait_mean,
+        last.trait_variance,
+        record.row.mean_fitness,
+        cells.join("\n"),
+    )
+}
