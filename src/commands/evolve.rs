@@ -110,6 +110,8 @@ fn circumstances(settings: &Settings, prediction: &Prediction) -> Circumstances 
         mutations_per_generation: settings.habitat.sites as f64
             * settings.traits.mutation_probability,
         mutation_sd: settings.traits.mutation_sd,
+        best_division_index: prediction.best.division_index,
+        onset_index: settings.onset.index,
         slope: prediction.cues.iter().filter_map(steepness).max_by(f64::total_cmp),
     }
 }

@@ -26,6 +26,10 @@ pub struct Circumstances {
     /// gradient of the most favoured cue, or, under disruption, its curvature times one logit.
     /// `None` where it is not known.
     pub slope: Option<f64>,
+    /// Expected division index of the best programme's bodies.
+    pub best_division_index: f64,
+    /// Division index from which a population counts as differentiated (`onset.index`).
+    pub onset_index: f64,
 }
 
 impl Circumstances {
@@ -98,6 +102,13 @@ pub enum Reason {
         /// Replicates without onset that had not died out.
         replicates: usize,
     },
+    /// Even the best programme's bodies divide less than counts as an onset.
+    MarkOutOfReach {
+        /// Their expected division index.
+        best: f64,
+        /// The index asked for.
+        mark: f64,
+    },
     /// The predicted class was not reached.
     StillUnderWay,
     /// None of the usual reasons holds.
@@ -157,6 +168,10 @@ fn full_onset(summary: &Summary) -> Judgement {
 }
 
 fn why_absent(summary: &Summary, circumstances: &Circumstances) -> Vec<Reason> {
+    let (best, mark) = (circumstances.best_division_index, circumstances.onset_index);
+    if best < mark {
+        return vec![Reason::MarkOutOfReach { best, mark }];
+    }
     let mut reasons = Vec::new();
     if circumstances.too_few_generations() {
         reasons.push(Reason::TooFewGenerations {

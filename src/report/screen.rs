@@ -265,6 +265,10 @@ fn explain(reason: Reason) -> String {
              raise run.generations",
             words::replicates(replicates)
         ),
+        Reason::MarkOutOfReach { best, mark } => format!(
+            "the mark: even the best programme's bodies reach a division index of {best:.2} only, \
+             and onset.index asks for {mark:.2}; lower it"
+        ),
         Reason::StillUnderWay => "evolution still under way: bodies are less differentiated than \
             the best programme's; raise run.generations, or let replicates go on after the onset"
             .to_owned(),

@@ -15,6 +15,8 @@ const AMPLE: Circumstances = Circumstances {
     mutations_per_generation: 100.0,
     mutation_sd: 0.2,
     slope: Some(0.1),
+    best_division_index: 0.9,
+    onset_index: 0.5,
 };
 
 fn judge(verdict: Verdict, rows: &[ReplicateRow], circumstances: Circumstances) -> Judgement {
@@ -33,6 +35,13 @@ fn evolution_does_what_theory_says() {
     let found = judge(Verdict::NotFavouredLocally, &[censored(0), extinct(1, 5.0)], AMPLE);
     assert_eq!(found.agreement, Agreement::Full);
     assert_eq!(judge(Verdict::FavouredAtOnce, &[], AMPLE).agreement, Agreement::Untested);
+}
+
+#[test]
+fn a_mark_above_the_best_programme_is_the_reason() {
+    let low = Circumstances { best_division_index: 0.4, sites: 10, ..AMPLE };
+    let found = judge(Verdict::FavouredAtOnce, &[censored(0)], low);
+    assert_eq!(found.reasons, [Reason::MarkOutOfReach { best: 0.4, mark: 0.5 }]);
 }
 
 #[test]

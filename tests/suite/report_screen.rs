@@ -49,6 +49,8 @@ fn report(
         mutations_per_generation: 25.6,
         mutation_sd: 0.2,
         slope: Some(0.05),
+        best_division_index: 0.9,
+        onset_index: 0.5,
     };
     let content = EvolveReport {
         summary: &summary,
