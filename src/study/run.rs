@@ -108,7 +108,10 @@ impl Replicates<'_> {
             return None;
         }
         let mut replicate = Replicate::found(self.settings, self.start, number);
-        while let Some(census) = replicate.advance(stopped) {
+        // Asked here too: censuses may follow each other faster than a replicate asks by itself.
+        while !stopped()
+            && let Some(census) = replicate.advance(stopped)
+        {
             self.watcher.at_census(census);
         }
         cell_lives.fetch_add(replicate.cell_lives(), Ordering::Relaxed);

@@ -60,9 +60,11 @@ pub struct Growth {
     crowd: Crowd,
     adult_cells: usize,
     propagule_cells: usize,
-    /// Sites by distance from the centre; within the shell being filled, in the order drawn.
+    /// Sites by distance from the centre; of the shell being filled, those still vacant come last.
     targets: Vec<u32>,
+    /// The shell being filled, and where it ends among the sites.
     shell: usize,
+    shell_end: usize,
     /// Cells of the body so far; entries of the following beyond it are leftovers.
     held: usize,
     places: Vec<u32>,
@@ -84,6 +86,7 @@ impl Growth {
             propagule_cells,
             targets: lattice.order().to_vec(),
             shell: 0,
+            shell_end: 0,
             held: 0,
             places: vec![0; adult_cells],
             labels: vec![0; adult_cells],
@@ -128,9 +131,9 @@ impl Growth {
     }
 
     fn found(&mut self, rng: &mut impl Rng) {
-        self.crowd.clear(&self.targets);
+        self.crowd.clear(self.lattice.order());
         self.targets.copy_from_slice(self.lattice.order());
-        self.shell = 0;
+        (self.shell, self.shell_end) = (0, self.lattice.shell_ends()[0]);
         self.held = self.propagule_cells;
         self.labels[..self.held].fill(0);
         self.reserves_eu.fill(0.0);
@@ -223,18 +226,15 @@ impl Growth {
     /// A random vacant site of those nearest the centre, and random bits to spare.
     #[inline]
     fn draw_target(&mut self, held: usize, random: u32) -> (u32, u32) {
-        let (choices, first) = self.open_shell(held);
-        let (pick, ties) = below(random, choices);
-        self.targets.swap(first, first + pick);
-        (self.targets[first], ties)
-    }
-
-    /// How many sites of the nearest shell with room are vacant, and where they start.
-    fn open_shell(&mut self, held: usize) -> (usize, usize) {
-        if self.lattice.shell_ends()[self.shell] == held {
+        if held == self.shell_end {
             self.shell += 1;
+            self.shell_end = self.lattice.shell_ends()[self.shell];
         }
-        (self.lattice.shell_ends()[self.shell] - held, held)
+        let (pick, ties) = below(random, self.shell_end - held);
+        let vacant = &mut self.targets[held..self.shell_end];
+        let target = vacant[pick];
+        vacant[pick] = vacant[0];
+        (target, ties)
     }
 
     /// Adds what every cell saves in `hours` without dividing.

@@ -219,3 +219,6 @@ fn bearing(lattice: &Lattice, newcomer: Newcomer) -> Bearing {
         turns: turns[0] | turns[1] | turns[2],
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,9 +1,15 @@
 //! Checks of the library and the program against values from outside, one file per subject.
 
+mod command_check;
+mod command_evolve;
+mod command_evolve_extremes;
+mod command_evolve_refusals;
+mod command_evolve_same_bytes;
 mod command_fixture;
 mod command_output;
 mod command_predict;
 mod command_wrong_scenario;
+mod house_rules;
 mod readme;
 mod readme_house;
 mod readme_results;

@@ -37,6 +37,11 @@ fn typed() -> Vec<Vec<&'static str>> {
     words.map(|line| line.split_whitespace().collect()).collect()
 }
 
+/// Whether a name is that of a TOML file.
+pub(crate) fn is_scenario(name: &str) -> bool {
+    Path::new(name).extension().is_some_and(|extension| extension == "toml")
+}
+
 #[test]
 fn every_command_to_type_is_taken() {
     let typed = typed();
@@ -45,7 +50,7 @@ fn every_command_to_type_is_taken() {
     for words in typed {
         let line = [&["somadawn"], words.as_slice()].concat();
         let cli = Cli::try_parse_from(&line).unwrap_or_else(|error| panic!("{line:?}: {error}"));
-        for file in words.iter().filter(|word| word.ends_with(".toml") && **word != READERS_OWN) {
+        for file in words.iter().filter(|word| is_scenario(word) && **word != READERS_OWN) {
             Settings::load(Path::new(file), &cli.common.overrides())
                 .unwrap_or_else(|error| panic!("{line:?}: {error:?}"));
         }

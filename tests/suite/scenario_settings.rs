@@ -124,10 +124,9 @@ fn every_curve_is_read_and_spelled_out() {
     let points = [[0.0, 0.1], [0.5, 0.1], [2.0, 1.5]];
     let table = ReturnCurve::table(&points).expect("a curve");
     assert_eq!(curve("curve = 'table', points = [[0, 0.1], [0.5, 0.1], [2, 1.5]]"), table);
-    let steep = "title='x'\n[returns.viability]\ncurve='sigmoid'\nhalf=1e6\nsteepness=100";
-    let steep = faults(steep);
-    assert_eq!(steep.len(), 1);
-    assert!(matches!(steep[0].kind, FaultKind::Curve { .. }), "{steep:?}");
+    let steep = ReturnCurve::Sigmoid { half: 1e6, steepness: 100.0 };
+    assert_eq!(curve("curve = 'sigmoid', half = 1e6, steepness = 100"), steep);
+    assert_eq!(steep.value(1.0), 1.0);
 }
 
 #[test]

@@ -10,13 +10,24 @@ use crate::world::components::{
 use crate::world::draws::exponential;
 use crate::world::resources::{Calendar, Clock, Event, Ledger, Maturing, Random, Rules, Vacancies};
 
+/// Least hazard that is told from none, 1/h: where returns overflow to an infinite viability, a
+/// life must still end at a finite hour.
+const LEAST_HAZARD_PER_H: f64 = 1e-300;
+
+/// Most propagules of a life that the stock can count one by one.
+const MOST_PROPAGULES_OF_A_LIFE: f64 = (1_u64 << 50) as f64;
+
+/// Most propagules of a colony in a tick; each of millions of sites may release as many.
+const MOST_PROPAGULES_OF_A_TICK: f64 = (1_u64 << 31) as f64;
+
 /// Draws the lifespan of every new adult and starts its stock.
 ///
 /// The colony dies when its integrated hazard passes an Exp(1) draw; its hazard is constant here,
 /// `m = m_ext + m0 / V` per h, so that is `draw / m` hours after adulthood. Its stock for propagules
-/// grows by `B e0 / c_p` propagules per h.
+/// grows by `B e0 / c_p` propagules per h, as far as they can be counted.
 pub fn set_lifespans(
     rules: Res<Rules>,
+    clock: Res<Clock>,
     maturing: Res<Maturing>,
     mut random: ResMut<Random>,
     mut calendar: ResMut<Calendar>,
@@ -38,13 +49,18 @@ pub fn set_lifespans(
         let here = site as usize;
         let hazard_per_h =
             life.extrinsic_hazard_per_h + life.adult_hazard_per_h / vitals[here].viability;
+        let hazard_per_h = hazard_per_h.max(LEAST_HAZARD_PER_H);
         vitals[here].hazard_per_h = hazard_per_h;
-        lives[here].dies_h = lives[here].adult_h + exponential(&mut random.0) / hazard_per_h;
+        let length_h = exponential(&mut random.0) / hazard_per_h;
+        lives[here].dies_h = lives[here].adult_h + length_h;
         since[here] = StockSince(lives[here].adult_h);
         until[here] = StockUntil(lives[here].dies_h);
         head_starts[here] = HeadStart(random.0.random::<f64>() - 0.5);
         let income = rules.0.budget.income_eu_per_h;
-        rates[here] = StockRate(vitals[here].fecundity * income / life.propagule_cost_eu);
+        let per_hour = vitals[here].fecundity * income / life.propagule_cost_eu;
+        let countable =
+            (MOST_PROPAGULES_OF_A_LIFE / length_h).min(MOST_PROPAGULES_OF_A_TICK / clock.tick_h);
+        rates[here] = StockRate(per_hour.min(countable));
         calendar.expect_death(Event { at_h: lives[here].dies_h, site });
     }
 }

@@ -83,9 +83,9 @@ impl Heeded {
 
     #[inline]
     const fn code(&self, draw: NoiseDraw, label: DivisionLabel, surface: Exposed) -> u8 {
-        let label = (label.0 as u8 & self.label_mask).wrapping_add(1);
+        let label = (label.0.cast_unsigned() & self.label_mask).wrapping_add(1);
         let surface = surface.0 as u8 & self.exposure_mask;
-        (draw.0 as u8).wrapping_add(1) | label << 2 | surface << 4
+        draw.0.cast_unsigned().wrapping_add(1) | label << 2 | surface << 4
     }
 }
 

@@ -6,6 +6,8 @@
 //! of one genotype, no juvenile hazard. Bodies grow by the same code (`tissue`), since placement on
 //! the lattice has nothing to do with how colonies are stored.
 
+#![expect(clippy::cast_sign_loss, reason = "hours and probabilities are never negative")]
+
 use std::cmp::Reverse;
 use std::collections::BinaryHeap;
 
@@ -297,36 +299,48 @@ impl FlatLoop {
         if released == 0 {
             return;
         }
-        let count = landing.sample(&mut self.rng) as usize;
-        for propagule in index::sample(&mut self.rng, released as usize, count) {
-            let site = self.vacancies[self.rng.random_range(0..self.vacancies.len())] as usize;
-            if self.settlers.iter().all(|(taken, _)| *taken != site) {
-                let (parent, genotype) = self.inherited(propagule as u64);
-                self.settlers.push((site, genotype));
-                let parent = &self.colonies[parent];
-                self.ledger.parental_age_h += now_h.min(parent.dies_h) - parent.founded_h;
+        let (empty, mut free) = (self.vacancies.len(), self.vacancies.len());
+        let mut landings = landing.sample(&mut self.rng);
+        while landings > 0 && free > 0 {
+            let landed = self.rng.random_range(0..empty);
+            if landed < free {
+                free -= 1;
+                self.vacancies.swap(landed, free);
             }
+            landings -= 1;
         }
-        let settlers = &self.settlers;
-        self.vacancies.retain(|site| settlers.iter().all(|(taken, _)| *taken != *site as usize));
-        self.ledger.recent_settlements += settlers.len() as u64;
-        self.ledger.settlements += settlers.len() as u64;
+        if free == empty {
+            return;
+        }
+        let released = released as usize;
+        let mut propagules = index::sample(&mut self.rng, released, empty - free).into_vec();
+        propagules.sort_unstable();
+        let (mut parent, mut passed) = (0, self.released[0] as usize);
+        for (turn, propagule) in propagules.into_iter().enumerate() {
+            while passed <= propagule {
+                parent += 1;
+                passed += self.released[parent] as usize;
+            }
+            let genotype = self.inherited(parent);
+            self.settlers.push((self.vacancies[free + turn] as usize, genotype));
+            let colony = &self.colonies[parent];
+            self.ledger.parental_age_h += now_h.min(colony.dies_h) - colony.founded_h;
+        }
+        self.vacancies.truncate(free);
+        self.vacancies.sort_unstable();
+        self.ledger.recent_settlements += self.settlers.len() as u64;
+        self.ledger.settlements += self.settlers.len() as u64;
     }
 
-    /// The parent and the genotype of the propagule of that number among those released.
-    fn inherited(&mut self, propagule: u64) -> (usize, Genotype) {
-        let (mut parent, mut left) = (0, propagule);
-        while left >= u64::from(self.released[parent]) {
-            left -= u64::from(self.released[parent]);
-            parent += 1;
-        }
+    /// What a propagule of the colony on site `parent` inherits.
+    fn inherited(&mut self, parent: usize) -> Genotype {
         let n = self.settings.body.adult_cells;
         let body = &self.cells.fecundity[parent * n..(parent + 1) * n];
         let total = self.colonies[parent].fecundity;
         let mother = weighted_index(body, |fecundity| *fecundity, total, &mut self.rng);
         let source = self.genotypes[self.cells.genotypes[parent * n + mother] as usize];
         let programme = mutated(&source.programme, &self.settings.traits, &mut self.rng);
-        (parent, Genotype { programme, ..source })
+        Genotype { programme, ..source }
     }
 
     /// Grows the bodies of this tick's settlers.

@@ -1,5 +1,5 @@
 //! How fast cells live: the ECS against a hand-written flat loop, and against itself in larger
-//! bodies and with longer ticks.
+//! bodies and with shorter ticks.
 //!
 //! `cargo bench --bench life_cycle` measures for about half a minute; run as a test, everything is
 //! done once, briefly, to see that both ways still end alike. Times are printed, never judged: whoever
@@ -11,9 +11,11 @@ mod flat_loop;
 mod stopwatch;
 
 use flat_loop::FlatLoop;
+use somadawn::evolution::Start;
 use somadawn::evolution::seeding::{generator, replicate_seed};
 use somadawn::scenario::Settings;
-use somadawn::theory::{Programme, ReturnCurve};
+use somadawn::study::start;
+use somadawn::theory::{Cue, ReturnCurve};
 use somadawn::world::Population;
 use somadawn::world::resources::{Genotype, Ledger};
 use stopwatch::Stopwatch;
@@ -56,7 +58,7 @@ impl Cost {
 }
 
 fn compare_with_flat_loop(effort: &Effort) {
-    let case = Case { adult_cells: 64, generations: effort.generations, ticks_per_generation: 200 };
+    let case = Case::of(64, effort.generations);
     let (mut ecs, mut flat) = (Vec::new(), Vec::new());
     // A first run warms caches and clocks up.
     case.run_ecs(0);
@@ -67,85 +69,77 @@ fn compare_with_flat_loop(effort: &Effort) {
         flat.push(cost.ns_per_cell_life());
         assert_eq!(world, arrays, "the world and the flat loop have drifted apart");
     }
-    let ratios: Vec<f64> = ecs.iter().zip(&flat).map(|(ecs, flat)| ecs / flat).collect();
     println!("reference case: 256 sites, 64 cells, noise, {} generations", effort.generations);
-    println!("  {:<34} {}", "ECS", rates(&ecs));
-    println!("  {:<34} {}", "flat loop, same end state", rates(&flat));
-    println!("  {:<34} {}", "time ECS / flat loop", spread(&ratios));
+    println!("  {:<26} {}", "ECS", rates(&ecs));
+    println!("  {:<26} {}", "flat loop, same end state", rates(&flat));
+    println!("  {:<26} {}", "time ECS / flat loop", spread(&ratios(&ecs, &flat)));
 }
 
 fn compare_sizes(effort: &Effort) {
-    let mut costs = vec![Vec::new(); SIZES.len()];
-    for round in 0..effort.rounds {
-        for (costs, adult_cells) in costs.iter_mut().zip(SIZES) {
-            // As many cell lives at each size, but for the few generations that the largest need.
-            let generations = (effort.generations * 32 / adult_cells as u64).max(2);
-            let case = Case { adult_cells, generations, ticks_per_generation: 200 };
-            costs.push(case.run_ecs(round).0.ns_per_cell_life());
-        }
-    }
+    // As many cell lives at each size, but for the few generations that the largest need.
+    let generations = |cells: usize| (effort.generations * 32 / cells as u64).max(2);
+    let cases = SIZES.map(|cells| Case::of(cells, generations(cells)));
+    let costs = interleaved(&cases, effort.rounds);
     println!("cost per cell life by body size");
     for (size, column) in SIZES.iter().zip(&costs) {
-        let ratios: Vec<f64> =
-            column.iter().zip(&costs[0]).map(|(cost, at_64)| cost / at_64).collect();
-        println!("  {size:>5} cells {:<22} {}  to 64: {}", "", rates(column), spread(&ratios));
+        let to_smallest = spread(&ratios(column, &costs[0]));
+        println!("  {:<26} {}  to 64: {to_smallest}", format!("{size} cells"), rates(column));
     }
 }
 
 fn compare_ticks(effort: &Effort) {
-    let case = |ticks_per_generation| Case {
-        adult_cells: 64,
-        generations: effort.generations.div_ceil(2),
-        ticks_per_generation,
-    };
-    let (fine, coarse): (Vec<f64>, Vec<f64>) = (0..effort.rounds)
-        .map(|round| [200, 100].map(|ticks| case(ticks).run_ecs(round).0.ns_per_cell_life()))
-        .map(|[fine, coarse]| (fine, coarse))
-        .unzip();
-    let ratios: Vec<f64> = coarse.iter().zip(&fine).map(|(coarse, fine)| coarse / fine).collect();
-    println!("ticks of a 100th of a generation");
-    println!("  {:<34} {}  to a 200th: {}", "64 cells", rates(&coarse), spread(&ratios));
+    let coarse = Case::of(64, effort.generations.div_ceil(2));
+    let half = Start { tick_h: coarse.start.tick_h / 2.0, ..coarse.start };
+    let fine = Case { start: half, settings: coarse.settings.clone(), ..coarse };
+    let costs = interleaved(&[coarse, fine], effort.rounds);
+    println!("cost per cell life by tick, 64 cells");
+    println!("  {:<26} {}", "100th of a generation", rates(&costs[0]));
+    let to_coarse = spread(&ratios(&costs[1], &costs[0]));
+    println!("  {:<26} {}  to a 100th: {to_coarse}", "200th of a generation", rates(&costs[1]));
+}
+
+/// Costs of each case, ns per cell life, the cases taking turns.
+fn interleaved(cases: &[Case], rounds: u64) -> Vec<Vec<f64>> {
+    let mut costs = vec![Vec::new(); cases.len()];
+    for round in 0..rounds {
+        for (costs, case) in costs.iter_mut().zip(cases) {
+            costs.push(case.run_ecs(round).0.ns_per_cell_life());
+        }
+    }
+    costs
+}
+
+fn ratios(costs: &[f64], others: &[f64]) -> Vec<f64> {
+    costs.iter().zip(others).map(|(cost, other)| cost / other).collect()
 }
 
 /// A case of the life cycle.
 struct Case {
-    adult_cells: usize,
+    settings: Settings,
+    start: Start,
     generations: u64,
-    ticks_per_generation: u32,
 }
 
 /// Where a run ends: counts, and every living genotype.
 type End = (Ledger, Vec<Genotype>);
 
 impl Case {
-    fn settings(&self) -> Settings {
+    /// The reference case with bodies of so many cells; all that is not said here has its default.
+    fn of(adult_cells: usize, generations: u64) -> Self {
         let mut settings = Settings::example("reference case");
-        settings.body.adult_cells = self.adult_cells;
+        settings.habitat.sites = 256;
+        settings.body.adult_cells = adult_cells;
+        settings.traits.cues = [Cue::Noise].into_iter().collect();
         let [viability, fecundity] = EXPONENTS.map(|exponent| ReturnCurve::Power { exponent });
         settings.returns.viability.curve = viability;
         settings.returns.fecundity.curve = fecundity;
-        settings
-    }
-
-    /// The generalist optimum, z* = a / (a + c).
-    fn founder() -> Programme {
-        Programme::generalist((EXPONENTS[0] / EXPONENTS[1]).ln())
-    }
-
-    /// A share of the generalist's generation time: growth and mean adult life, `V / m0`.
-    fn tick_h(&self, settings: &Settings) -> f64 {
-        let rounds = f64::from(self.adult_cells.next_power_of_two().trailing_zeros());
-        let growth_h = rounds * settings.budget.division_cost_eu / settings.budget.income_eu_per_h;
-        let viability = (EXPONENTS[0] / (EXPONENTS[0] + EXPONENTS[1])).powf(EXPONENTS[0]);
-        let adult_h = viability / settings.life.adult_hazard_per_h;
-        (growth_h + adult_h) / f64::from(self.ticks_per_generation)
+        Self { start: start(&settings), settings, generations }
     }
 
     fn run_ecs(&self, replicate: u64) -> (Cost, End) {
-        let settings = self.settings();
         let rng = generator(replicate_seed(1, 0, replicate));
-        let founder = |site| Genotype { programme: Self::founder(), founder: site };
-        let mut world = Population::founded(&settings, self.tick_h(&settings), rng, founder);
+        let founder = |site| Genotype { programme: self.start.programme, founder: site };
+        let mut world = Population::founded(&self.settings, self.start.tick_h, rng, founder);
         let (founders, began) = (world.ledger().cell_lives, Stopwatch::start());
         while world.clock().generation < self.generations as f64 && world.alive() > 0 {
             world.tick();
@@ -156,10 +150,9 @@ impl Case {
     }
 
     fn run_flat(&self, replicate: u64) -> (Cost, End) {
-        let settings = self.settings();
         let rng = generator(replicate_seed(1, 0, replicate));
-        let founder = |site| Genotype { programme: Self::founder(), founder: site };
-        let mut flat = FlatLoop::founded(&settings, self.tick_h(&settings), rng, founder);
+        let founder = |site| Genotype { programme: self.start.programme, founder: site };
+        let mut flat = FlatLoop::founded(&self.settings, self.start.tick_h, rng, founder);
         let (founders, began) = (flat.ledger.cell_lives, Stopwatch::start());
         while flat.generation < self.generations as f64 && flat.alive() > 0 {
             flat.tick();

@@ -18,7 +18,8 @@ impl Stopwatch {
     /// Seconds since the start.
     pub(crate) fn seconds(&self) -> f64 {
         match (self.on_processor_ns, on_processor_ns()) {
-            (Some(start), Some(now)) => (now - start) as f64 / 1e9,
+            // The system brings its count up to date every few milliseconds only.
+            (Some(start), Some(now)) if now > start => (now - start) as f64 / 1e9,
             _ => self.wall.elapsed().as_secs_f64(),
         }
     }
