@@ -59,9 +59,15 @@ impl fmt::Display for Shown<'_> {
         if let Failure::Scenario(ScenarioError::Faulty(faults)) = self.failure {
             return self.faults(faults, f);
         }
+        let mut told = self.failure.to_string();
         let mut cause = std::error::Error::source(self.failure);
         while let Some(error) = cause {
-            writeln!(f, "  because: {error}")?;
+            // Some messages hold their cause already.
+            let because = error.to_string();
+            if !told.contains(&because) {
+                writeln!(f, "  because: {because}")?;
+            }
+            told = because;
             cause = error.source();
         }
         self.failure.help().map_or(Ok(()), |help| writeln!(f, "  help: {help}"))

@@ -42,11 +42,14 @@ fn parse_bracket(text: &str) -> Result<Bracket, String> {
 }
 
 pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure> {
-    let settings = arguments.scenario.load(common)?;
+    // Read once: a pipe has nothing to say a second time.
+    let text = arguments.scenario.text()?;
+    let name = arguments.scenario.name();
+    let settings = Settings::from_toml_str(&name, &text, &common.overrides())?;
     let prediction = if arguments.critical.is_empty() {
         predict(&settings)
     } else {
-        with_critical(arguments, common, &settings)?
+        with_critical(arguments, common, &text, &settings)?
     };
     if common.json {
         return print_json(&prediction);
@@ -57,16 +60,16 @@ pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure>
 fn with_critical(
     arguments: &Arguments,
     common: &Common,
+    text: &str,
     settings: &Settings,
 ) -> Result<Prediction, Failure> {
-    let text = arguments.scenario.text()?;
     let keys = &arguments.critical;
     let Bracket { low, high } = bracket(arguments, settings)?;
     let query = CriticalQuery { keys: keys.clone(), low, high };
     let settings_at = |value| {
         let moved = keys.iter().map(|key| Override::number("--critical", key, value));
         let overrides: Vec<_> = common.overrides().into_iter().chain(moved).collect();
-        Settings::from_toml_str(&arguments.scenario.name(), &text, &overrides)
+        Settings::from_toml_str(&arguments.scenario.name(), text, &overrides)
     };
     Ok(predict_with_critical(settings, &query, settings_at)?)
 }

@@ -21,6 +21,15 @@ struct Line {
     summary: &'static str,
 }
 
+/// One scenario.
+#[derive(Debug, Serialize)]
+struct Page {
+    name: &'static str,
+    summary: &'static str,
+    /// The scenario file.
+    text: String,
+}
+
 pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure> {
     let Some(name) = &arguments.name else { return list(common) };
     let Some(template) = Template::named(name) else {
@@ -29,7 +38,12 @@ pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure>
             nearest: Template::nearest(name),
         });
     };
-    Ok(print(&template.text()?)?)
+    let text = template.text()?;
+    if common.json {
+        let Template { name, summary, .. } = *template;
+        return print_json(&Page { name, summary, text });
+    }
+    Ok(print(&text)?)
 }
 
 fn list(common: &Common) -> Result<(), Failure> {

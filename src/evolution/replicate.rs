@@ -65,13 +65,14 @@ impl<'s> Replicate<'s> {
         let due = self.next_census_generation();
         for ticks in 1_u32.. {
             self.population.tick();
-            if ticks.is_multiple_of(TICKS_BETWEEN_QUESTIONS) && stopped() {
-                return None;
-            }
             let first = self.censuses.is_empty() && self.population.adults().next().is_some();
             let reached = self.population.clock().generation >= due;
             if first || reached || self.population.alive() == 0 {
                 break;
+            }
+            // Asked last: a census that is due is never passed over, nor a replicate over without it.
+            if ticks.is_multiple_of(TICKS_BETWEEN_QUESTIONS) && stopped() {
+                return None;
             }
         }
         self.take_census();

@@ -64,7 +64,7 @@ impl RunFolder {
     /// A folder that is empty, or that holds the same run (finished or not), is taken as it is. One
     /// that holds another run is refused unless `replace`, which deletes that run's files. Files
     /// that no run wrote are never touched: beside the same run they may lie, else the folder is
-    /// refused.
+    /// refused. With `replace` the same run counts as new if it is finished, and goes on if not.
     ///
     /// # Errors
     /// All are the request's fault: [`RecordError::Create`], [`RecordError::NotAFolder`],
@@ -88,7 +88,9 @@ impl RunFolder {
         }
         contents.remove_temporary(&path)?;
         mark(&mut lock, &identity).map_err(access(&path))?;
-        let earlier = found.manifest.filter(|_| same && !replace);
+        // Whoever asks to replace a finished run wants it anew; an unfinished one goes on, so that
+        // the command that was interrupted, `--replace` and all, can be given again.
+        let earlier = found.manifest.filter(|run| same && !(replace && run.complete));
         Ok(Self { path, identity, earlier, _lock: lock })
     }
 
@@ -104,8 +106,8 @@ impl RunFolder {
         &self.identity
     }
 
-    /// The manifest of the same run if it was here before and is not to be replaced, so that a
-    /// finished run need not be repeated.
+    /// The manifest of the same run if it was here before and is not to be repeated, so that what
+    /// has finished need not be.
     #[must_use]
     pub const fn earlier(&self) -> Option<&Manifest> {
         self.earlier.as_ref()

@@ -33,11 +33,11 @@ pub struct ReplicateRow {
     pub onset_generation: Option<f64>,
     /// Generation at which it ended or died out.
     pub end_generation: f64,
-    /// Division index D at the last census with adults, 0 to 1.
+    /// Division index D at the last census, 0 to 1; `None` where that found no adults.
     pub division_index: Option<f64>,
     /// Share of soma cells at that census.
     pub soma_fraction: Option<f64>,
-    /// Commonest class of its bodies at that census.
+    /// Commonest class of its adult bodies at that census.
     pub class: Option<BodyClass>,
     /// Share of the between-cell variance of logit z that random fate explains.
     pub route_noise: Option<f64>,
@@ -47,7 +47,7 @@ pub struct ReplicateRow {
     pub route_exposure: Option<f64>,
     /// The same for income.
     pub route_income: Option<f64>,
-    /// Mean expected lifetime reproduction of the last census's programmes.
+    /// Mean over the adults of that census of the propagules each expects to release, `F / (c_p m)`.
     pub mean_fitness: Option<f64>,
 }
 

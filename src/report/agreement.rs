@@ -71,7 +71,7 @@ pub enum Agreement {
     None,
     /// Theory leaves both open: the outcome hangs on where evolution starts.
     Either,
-    /// No replicate finished.
+    /// No replicate finished, or none in which cells could stay alike had adults left to show it.
     Untested,
 }
 
@@ -129,6 +129,7 @@ impl Judgement {
     ///
     /// Where theory favours differentiation, every replicate should show an onset, and its bodies
     /// the predicted class; where it does not, none should; before a valley both can happen.
+    /// Populations that are gone show nothing of cells that stay alike.
     #[must_use]
     pub fn of(summary: &Summary, circumstances: &Circumstances) -> Self {
         let (onsets, all) = (summary.onset.count, summary.replicates);
@@ -144,6 +145,9 @@ impl Judgement {
                 agreement: some_or_none(onsets),
                 reasons: why_absent(summary, circumstances),
             },
+            Verdict::NotFavouredLocally if onsets == 0 && summary.last.division_index.is_none() => {
+                Self { agreement: Agreement::Untested, reasons: died_out(summary) }
+            }
             Verdict::NotFavouredLocally if onsets == 0 => {
                 Self { agreement: Agreement::Full, reasons: Vec::new() }
             }
@@ -186,10 +190,13 @@ fn why_absent(summary: &Summary, circumstances: &Circumstances) -> Vec<Reason> {
     if reasons.is_empty() && summary.onset.count > 0 && waiting > 0 {
         reasons.push(Reason::StillWaiting { replicates: waiting });
     }
-    if summary.extinct > 0 {
-        reasons.push(Reason::DiedOut { replicates: summary.extinct });
-    }
+    reasons.extend(died_out(summary));
     or_unexplained(reasons)
+}
+
+fn died_out(summary: &Summary) -> Vec<Reason> {
+    let replicates = summary.extinct;
+    (replicates > 0).then_some(Reason::DiedOut { replicates }).into_iter().collect()
 }
 
 fn why_present(circumstances: &Circumstances) -> Vec<Reason> {

@@ -233,7 +233,12 @@ fn verdict(agreement: Agreement, summary: &Summary) -> (Ink, String) {
         Agreement::Either => {
             (Ink::Doubtful, format!("open: {onsets}; before a valley either can happen"))
         }
-        Agreement::Untested => (Ink::Doubtful, "untested: no replicate finished".to_owned()),
+        Agreement::Untested if summary.replicates == 0 => {
+            (Ink::Doubtful, "untested: no replicate finished".to_owned())
+        }
+        Agreement::Untested => {
+            (Ink::Doubtful, "untested: no population had adults left at the end".to_owned())
+        }
     }
 }
 

@@ -1,7 +1,7 @@
 //! What theory says of a scenario, without simulating a population.
 //!
-//! Growth is taken to be synchronous, as it is with `division_cv = 0`; with variable division
-//! costs the time of growth and the labels it leaves are those of the mean cost.
+//! The time of growth is that of synchronous rounds, as with `division_cv = 0`, also where division
+//! costs vary; the labels that growth leaves are then those of a sample of bodies.
 
 use std::collections::BTreeMap;
 

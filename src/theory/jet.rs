@@ -183,8 +183,7 @@ impl Mul<f64> for Jet {
     }
 }
 
-// a / b is a times the reciprocal of b.
-#[expect(clippy::suspicious_arithmetic_impl)]
+#[expect(clippy::suspicious_arithmetic_impl, reason = "a / b is a times the reciprocal of b")]
 impl Div for Jet {
     type Output = Self;
     fn div(self, other: Self) -> Self {

@@ -117,9 +117,9 @@ fn finished(manifest: &Value) -> usize {
 
 #[test]
 fn a_run_that_is_interrupted_goes_on_with_the_same_command() {
-    for signal in ["-TERM", "-INT"] {
+    for (signal, further) in [("-TERM", &["--replace"][..]), ("-INT", &[])] {
         let desk = Desk::with(LONG_POND);
-        desk.evolve_into("whole", &["--threads", "2"]);
+        let whole = desk.evolve_into("whole", &["--threads", "2"]);
         // Censuses of the first replicate reach the disk when it is finished.
         let run = Running::start(&desk);
         let (code, out, err) = run.signal(signal, || bytes_pending(&desk) > 4096);
@@ -136,8 +136,11 @@ fn a_run_that_is_interrupted_goes_on_with_the_same_command() {
         let (code, _, err) = Running::start(&desk).signal("-TERM", || bytes_pending(&desk) > 0);
         assert_eq!(code, Some(75), "{err}");
         assert!(finished(&desk.json("run/manifest.json")) >= done);
-        desk.evolve_into("run", &["--threads", "1"]);
+        let rest = desk.evolve_into("run", &[&["--threads", "1"], further].concat());
         assert_same_run(&desk, "whole", "run");
+        // What had finished is not run again, not even where the command says `--replace`.
+        let lives = |run: &Value| run["throughput"]["cell_lives"].as_u64().expect("a count");
+        assert!(lives(&rest) < lives(&whole));
     }
 }
 

@@ -88,6 +88,10 @@ fn templates_are_listed_and_printed() {
         std::fs::write(desk.path().join("pond.toml"), ran.out).expect("the folder is writable");
         assert_eq!(desk.run(&["check", "pond.toml"]).code, 0, "{name}");
     }
+    let printed = desk.run(&["template", "valley", "--json"]);
+    let document: Value = serde_json::from_str(&printed.out).expect("one JSON document");
+    assert_eq!(document["name"], "valley");
+    assert_eq!(document["text"], desk.run(&["template", "valley"]).out);
     let wrong = desk.run(&["template", "vally"]);
     assert_eq!((wrong.code, wrong.out.as_str()), (2, ""));
     assert!(wrong.err.contains("there is no template `vally`"), "{}", wrong.err);

@@ -20,6 +20,18 @@ fn a_list_to_read_and_a_json_document() {
     assert_eq!(document["critical"], Value::Null);
 }
 
+/// A pipe gives its text once only.
+#[cfg(unix)]
+#[test]
+fn a_scenario_from_a_pipe_has_critical_values_too() {
+    let mut command = assert_cmd::Command::new(env!("CARGO_BIN_EXE_somadawn"));
+    let ran = command.args(["predict", "/dev/stdin", "--critical", EXPONENTS, "--json"]);
+    let output = ran.write_stdin(POND).output().expect("the program starts");
+    assert_eq!(output.status.code(), Some(0), "{output:?}");
+    let document: Value = serde_json::from_slice(&output.stdout).expect("one JSON document");
+    assert!(document["critical"]["local"].is_f64(), "{document}");
+}
+
 fn predict(settings: &[&str]) -> Value {
     let set: Vec<&str> = settings.iter().flat_map(|setting| ["--set", setting]).collect();
     let ran = Desk::with(POND).run(&[&["predict", "pond.toml", "--json"], &set[..]].concat());

@@ -15,9 +15,14 @@ fn temporary() -> TempDir {
 
 /// Leaves a finished run of `identity()` in `path`.
 fn finished_run(path: &Path) {
+    run_of(path, 1);
+}
+
+/// Leaves a run of `identity()` in `path` of which one of `planned` replicates has finished.
+fn run_of(path: &Path, planned: u32) {
     let mut run = RunRecorder::start(RunFolder::open(path, identity(), false).unwrap()).unwrap();
     run.add(record(onset(0, 100.0))).unwrap();
-    run.finish(&ending(1)).unwrap();
+    run.finish(&ending(planned)).unwrap();
 }
 
 fn names(path: &Path) -> Vec<String> {
@@ -51,6 +56,18 @@ fn the_same_run_may_return_finished_or_not() {
     let anew = RunFolder::open(folder.path(), identity(), true).unwrap();
     assert!(anew.earlier().is_none());
     assert!(folder.path().join("notes.txt").exists());
+}
+
+#[test]
+fn an_unfinished_run_goes_on_even_where_finished_ones_are_replaced() {
+    let folder = temporary();
+    run_of(folder.path(), 2);
+    for replace in [false, true] {
+        let again = RunFolder::open(folder.path(), identity(), replace).unwrap();
+        assert!(again.earlier().is_some_and(|run| run.replicates_finished == [0]), "{replace}");
+    }
+    let another = RunFolder::open(folder.path(), another_identity(), true).unwrap();
+    assert!(another.earlier().is_none());
 }
 
 #[test]

@@ -37,6 +37,14 @@ fn evolution_does_what_theory_says() {
     assert_eq!(judge(Verdict::FavouredAtOnce, &[], AMPLE).agreement, Agreement::Untested);
 }
 
+/// Populations that are gone have not stayed alike: that is no agreement with theory.
+#[test]
+fn dead_populations_agree_with_nothing() {
+    let found = judge(Verdict::NotFavouredLocally, &[extinct(0, 5.0), extinct(1, 9.0)], AMPLE);
+    let reasons = vec![Reason::DiedOut { replicates: 2 }];
+    assert_eq!(found, Judgement { agreement: Agreement::Untested, reasons });
+}
+
 #[test]
 fn a_mark_above_the_best_programme_is_the_reason() {
     let low = Circumstances { best_division_index: 0.4, sites: 10, ..AMPLE };

@@ -2,6 +2,7 @@
 
 use std::sync::atomic::AtomicBool;
 
+use somadawn::evolution::Replicate;
 use somadawn::record::{ReplicateRecord, Stage};
 use somadawn::scenario::Settings;
 use somadawn::study::run::{Replicates, Unwatched};
@@ -53,6 +54,29 @@ fn records_do_not_depend_on_the_number_of_threads() {
         assert!(records(&settings, threads) == alone, "{threads} threads change the outcome");
     }
     assert!(alone[0].census != alone[1].census, "replicates are all the same");
+}
+
+/// Whoever asks a replicate to stop may let it go on: it then leaves what it leaves undisturbed. Of some
+/// thousand censuses several fall due just as it asks whether to stop.
+#[test]
+fn a_replicate_told_to_stop_again_and_again_passes_no_census_over() {
+    let mut settings = Settings::example("interrupted");
+    settings.habitat.sites = 64;
+    settings.body.adult_cells = 2;
+    settings.run.generations = 200;
+    settings.run.census_every = 4;
+    let start = start(&settings);
+    for number in 0..20 {
+        let whole = Replicate::found(&settings, start, number);
+        let halting = Replicate::found(&settings, start, number);
+        let [whole, halting] = [(whole, false), (halting, true)].map(|(mut replicate, stop)| {
+            while !replicate.is_over() {
+                replicate.advance(|| stop);
+            }
+            replicate.finish()
+        });
+        assert!(whole == halting, "replicate {number}");
+    }
 }
 
 /// Value stability: what these seeds gave when the test was written. A change that alters them alters

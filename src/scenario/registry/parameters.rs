@@ -14,7 +14,7 @@ mod returns;
 
 pub(crate) use returns::{FECUNDITY, TaskParameters, VIABILITY};
 
-/// Most cells of all colonies together: about 100 bytes each in memory.
+/// Most cells of all colonies together: about 200 bytes each in memory.
 pub(crate) const MOST_CELLS: u64 = 100_000_000;
 
 /// Largest bound of a trait: beyond it the logistic function is 0 or 1 to double precision.
