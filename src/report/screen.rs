@@ -160,9 +160,12 @@ fn onset(report: &EvolveReport<'_>) -> String {
 fn division_index(summary: &Summary) -> String {
     let last = &summary.last;
     let Some(index) = last.division_index else {
-        let dead = summary.extinct == summary.replicates;
-        let left = if dead { "population was" } else { "adult colony was" };
-        return format!("not known: no {left} left at the end");
+        let why = match summary.replicates {
+            0 => "no replicate has finished",
+            all if all == summary.extinct => "no population was left at the end",
+            _ => "no colony was adult at the end",
+        };
+        return format!("not known: {why}");
     };
     let interval = match (last.division_index_low, last.division_index_high) {
         (Some(low), Some(high)) => {

@@ -126,6 +126,8 @@ fn ticks_that_are_too_long_or_too_short() {
     let (summary, _) = evolve(&desk, &["run.tick_h=1e6"]);
     assert_eq!(summary["extinct"], 0);
     assert_eq!(summary["final"]["division_index"], Value::Null);
+    let ran = desk.evolve(&["--set", "run.tick_h=1e6", "--out", "report"]);
+    assert!(ran.out.contains("no colony was adult at the end"), "{}", ran.out);
     lives(&desk, &["run.tick_h=1e-2", "run.generations=5"]);
     desk.refuses(&["--set", "run.tick_h=1e-300"], &["`run.tick_h` = 1e-300 is out of range"]);
     let ran = desk.run(&["check", "pond.toml", "--set", "run.tick_h=1e6"]);
