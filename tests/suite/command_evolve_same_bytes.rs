@@ -76,7 +76,7 @@ impl Running {
     fn signal(mut self, name: &str, ready: impl Fn() -> bool) -> (Option<i32>, String, String) {
         let began = Instant::now();
         while !ready() {
-            assert!(began.elapsed() < Duration::from_secs(120), "the run is never ready");
+            assert!(began.elapsed() < Duration::from_mins(2), "the run is never ready");
             let ended = self.0.try_wait().expect("the run can be waited for");
             assert!(ended.is_none(), "the run ended before it could be interrupted");
             sleep(Duration::from_millis(1));

@@ -9,7 +9,7 @@ use tempfile::TempDir;
 
 /// Longest that a run of the program may take: each takes well under a second, so whatever is cut
 /// off here hangs.
-const PATIENCE: Duration = Duration::from_secs(120);
+const PATIENCE: Duration = Duration::from_mins(2);
 
 /// A population that evolves in some hundredths of a second.
 pub(crate) const SMALL_POND: &str = "title = \"Pond\"

@@ -73,7 +73,7 @@ fn numbers_that_do_not_exist_are_null() {
 }
 
 /// With pooled power returns x^a, x^c and no other hazard: z* = a/(a+c), and R0 is
-/// n z^a (1-z)^c / (c_p m0).
+/// `n z^a (1-z)^c / (c_p m0)`.
 #[test]
 fn generalists_in_closed_form() {
     for (a, c) in [(0.5, 0.5), (1.0, 1.0), (2.5, 2.5), (1.7, 1.3), (0.4, 3.0)] {

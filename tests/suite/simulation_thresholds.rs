@@ -10,9 +10,12 @@ use somadawn::study::start;
 use somadawn::theory::{Cue, CueSet, closed_forms};
 
 /// Bodies of `cells` cells with exponents a = c = `exponent`, one cue, that evolve from the
-/// generalist optimum: 256 sites, every trait of one propagule in ten mutating by 0.3 on the logit scale.
+/// generalist optimum: each trait mutates in one propagule of ten by 0.3 on the logit scale. 256 sites, but
+/// 1024 with `lineage`, where selection below the threshold is weak and drift must be kept from
+/// doing its work.
 fn scenario(cells: usize, exponent: f64, cue: Cue) -> Settings {
     let mut settings = Settings::example("either side of a threshold");
+    settings.habitat.sites = if cue == Cue::Lineage { 1024 } else { 256 };
     settings.body.adult_cells = cells;
     settings.returns.viability = power(exponent);
     settings.returns.fecundity = power(exponent);
@@ -61,7 +64,12 @@ impl Bracket {
         Self { cells, cue: Cue::Noise, global, local }
     }
 
-    /// No replicate of 10 differentiates below, all but one of 12 do above.
+    /// No replicate of 10 differentiates below, at least 11 of 12 do above.
+    ///
+    /// Over 100 replicates each (60 with `lineage`) none and all did, for every bracket here: the chance
+    /// of a replicate to go astray is below 4.5 % (8 %) at a confidence of 99 %. That bound is crude:
+    /// division indices below ended at 0.26 at most, of the 0.5 that count for five censuses in a row,
+    /// and onsets above came before generation 420 of 600.
     fn check(&self) {
         let below = scenario(self.cells, 0.92 * self.global, self.cue);
         let rows = run(&below, size(10, 100));
@@ -96,7 +104,7 @@ fn bodies_of_64_cells_differentiate_by_luck_where_theory_says() {
 /// Labels of divisions in whole rounds split a body evenly: the threshold is 1.
 #[test]
 fn asymmetric_division_differentiates_bodies_from_linear_returns_on() {
-    Bracket { cells: 16, cue: Cue::Lineage, global: 1.0, local: 1.0 }.check();
+    Bracket { cells: 8, cue: Cue::Lineage, global: 1.0, local: 1.0 }.check();
 }
 
 /// Final division index of each replicate of bodies of so many cells that read exposure, where
