@@ -56,15 +56,15 @@ fn records_do_not_depend_on_the_number_of_threads() {
     assert!(alone[0].census != alone[1].census, "replicates are all the same");
 }
 
-/// Whoever asks a replicate to stop may let it go on: it then leaves what it leaves undisturbed. Of some
-/// thousand censuses several fall due just as it asks whether to stop.
+/// Whoever asks a replicate to stop may let it go on: it then leaves what it leaves undisturbed. Of 1,000
+/// censuses several fall due just as it asks whether to stop.
 #[test]
 fn a_replicate_told_to_stop_again_and_again_passes_no_census_over() {
     let mut settings = Settings::example("interrupted");
-    settings.habitat.sites = 64;
+    settings.habitat.sites = 16;
     settings.body.adult_cells = 2;
-    settings.run.generations = 200;
-    settings.run.census_every = 4;
+    settings.run.generations = 1000;
+    settings.run.census_every = 20;
     let start = start(&settings);
     for number in 0..20 {
         let whole = Replicate::found(&settings, start, number);
