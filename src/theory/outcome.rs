@@ -14,8 +14,9 @@ pub struct Outcome {
     pub division_index: f64,
     /// Expected share of soma cells.
     pub soma_fraction: f64,
-    /// The commonest class of body; of equally common ones the least differentiated. A kind of which a body has less than half a cell counts as
-    /// absent (counts are whole but at the nodes of a quadrature).
+    /// The commonest class of body; of equally common ones the least differentiated. A kind of
+    /// which a body has less than half a cell counts as absent (counts are whole but at the nodes
+    /// of a quadrature).
     pub class: BodyClass,
 }
 
