@@ -113,7 +113,11 @@ fn answer(page: &mut Page, report: &EvolveReport<'_>) {
     if summary.extinct > 0 {
         page.line(
             "Died out",
-            &format!("{} of {}", summary.extinct, words::replicates(summary.replicates)),
+            &format!(
+                "{} of {} before an onset",
+                summary.extinct,
+                words::replicates(summary.replicates)
+            ),
         );
     }
 }

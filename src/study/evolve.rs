@@ -83,7 +83,10 @@ impl Evolve<'_> {
     ) -> Result<(), RunError> {
         let done: BTreeSet<u32> = finished.iter().map(|record| record.row.replicate).collect();
         let mut recorder = RunRecorder::start(folder)?;
-        finished.into_iter().try_for_each(|record| recorder.add(record))?;
+        finished.into_iter().try_for_each(|record| {
+            self.watcher.at_end(&record.row);
+            recorder.add(record)
+        })?;
         let planned = self.settings.run.replicates;
         let numbers: Vec<u32> = (0..planned).filter(|number| !done.contains(number)).collect();
         let replicates = Replicates {

@@ -1,4 +1,4 @@
-//! Random draws that several mechanisms make, the same on every machine.
+//! Random draws that several mechanisms make.
 
 use rand::{Rng, RngExt};
 use rand_distr::{Distribution, StandardNormal};

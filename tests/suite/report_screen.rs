@@ -79,7 +79,7 @@ fn the_answer_is_in_words() {
         "6 of 8 replicates: probability 0.75 (Wilson 0.41 to 0.93)",
         "complete (6 of 7), by noise (7 of 7)",
         "partly: 6 of 8 replicates differentiated",
-        "Died out        1 of 8 replicates",
+        "Died out        1 of 8 replicates before an onset",
         "98.3 million cell lives in 8.0 s on 2 threads (12.3 million/s)",
         "outputs/two  spaces\n",
         "hypothesis",
