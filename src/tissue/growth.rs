@@ -8,8 +8,8 @@ use std::cmp::Reverse;
 use std::collections::BinaryHeap;
 
 use rand::Rng;
-use rand_distr::{Distribution, StandardNormal};
 
+use super::draws::standard_normal;
 use super::exposure::ExposureMap;
 use super::lattice::Lattice;
 use super::placement::{Crowd, Newcomer};
@@ -255,7 +255,7 @@ struct Division {
 
 impl Division {
     fn drawn(mother: u32, now_h: f64, pace: &Pace, rng: &mut impl Rng) -> Self {
-        let deviate: f64 = StandardNormal.sample(rng);
+        let deviate = standard_normal(rng);
         let share = (1.0 + pace.division_cv * deviate).max(LEAST_COST_SHARE);
         let at_h = now_h + share * pace.division_interval_h();
         Self { at_h, tie: rng.next_u32(), mother }

@@ -1,10 +1,10 @@
-//! Random draws that several mechanisms make.
+//! Random draws that several mechanisms make, the same on every machine.
 
 use rand::{Rng, RngExt};
-use rand_distr::{Distribution, StandardNormal};
 
 use crate::theory::reaction_norm::NOISE_BIAS_BOUND;
 use crate::theory::{Cue, Programme};
+use crate::tissue::standard_normal;
 
 use crate::scenario::settings::Traits;
 
@@ -12,6 +12,11 @@ use crate::scenario::settings::Traits;
 pub fn exponential(rng: &mut impl Rng) -> f64 {
     // 1 - u lies in (0, 1].
     -libm::log(1.0 - rng.random::<f64>())
+}
+
+/// How many trials it takes to the first success, each of chance `p` in (0, 1]: at least 1.
+pub fn geometric(p: f64, rng: &mut impl Rng) -> f64 {
+    (exponential(rng) / -libm::log1p(-p)).ceil().max(1.0)
 }
 
 /// `value` folded back into `[-bound, bound]` at both walls.
@@ -34,7 +39,7 @@ pub fn mutated(parent: &Programme, traits: &Traits, rng: &mut impl Rng) -> Progr
     let mut child = *parent;
     let mut mutate = |value: &mut f64, bound: f64| {
         if rng.random::<f64>() < traits.mutation_probability {
-            let step: f64 = StandardNormal.sample(rng);
+            let step: f64 = standard_normal(rng);
             *value = reflected(*value + traits.mutation_sd * step, bound);
         }
     };
@@ -87,6 +92,20 @@ mod tests {
         {
             approx::assert_abs_diff_eq!(reflected(value, 1.0), folded, epsilon = 1e-12);
         }
+    }
+
+    #[test]
+    #[expect(clippy::float_cmp, reason = "waiting times are whole numbers")]
+    fn waiting_times_are_geometric() {
+        // 100,000 draws of chance 0.3: shares of 1, 2, 3 and more trials within 4.9 standard errors.
+        let mut rng = Xoshiro256PlusPlus::seed_from_u64(6);
+        let draws: Vec<f64> = (0..100_000).map(|_| geometric(0.3, &mut rng)).collect();
+        for (trials, p) in [(1.0, 0.3), (2.0, 0.21), (3.0, 0.147), (7.0, 0.035_294_7)] {
+            let share = draws.iter().filter(|draw| **draw == trials).count() as f64 / 1e5;
+            let error: f64 = (p * (1.0 - p) / 1e5_f64).sqrt();
+            assert!((share - p).abs() < 4.9 * error, "{trials}: {share}");
+        }
+        assert!((0..1000).all(|_| geometric(1.0, &mut rng) == 1.0));
     }
 
     #[test]

@@ -3,20 +3,18 @@
 use bevy_ecs::prelude::*;
 use rand::seq::index;
 use rand::{Rng, RngExt};
-use rand_distr::{Binomial, Distribution};
 
 use super::only_table;
 use crate::world::components::{GenotypeId, Lifespan, Output, Vitals};
-use crate::world::draws::{mutated, weighted_index};
+use crate::world::draws::{geometric, mutated, weighted_index};
 use crate::world::resources::{
     Clock, GenePool, Genotype, Ledger, Random, Released, Rules, Settler, Settlers, Vacancies,
 };
 
 /// Draws which propagules of this tick land on empty sites, and what they inherit.
 ///
-/// Of K propagules released over N sites of which E are empty, Binomial(K, E/N) land on an empty
-/// one, each on a random one of the E; who comes second to a site is lost. Those that settle are a
-/// random sample of the K without replacement.
+/// Every propagule lands on a random site, and settles it if it is empty; who comes second to a site
+/// is lost. They come in random order, so those that settle are a random sample without replacement.
 #[expect(clippy::too_many_arguments, reason = "a system names everything it touches")]
 pub fn settle_propagules(
     rules: Res<Rules>,
@@ -34,8 +32,8 @@ pub fn settle_propagules(
     if released.total == 0 {
         return;
     }
-    let landings = landings_on_empty(&rules, &released, &vacancies, &mut random.0);
-    let taken = take_sites(landings, &mut vacancies, &mut random.0);
+    let sites = rules.0.habitat.sites;
+    let taken = take_sites(released.total, sites, &mut vacancies, &mut random.0);
     if taken.is_empty() {
         return;
     }
@@ -51,33 +49,27 @@ pub fn settle_propagules(
     ledger.recent_settlements += settlers.0.len() as u64;
 }
 
-/// How many propagules land on an empty site.
-fn landings_on_empty(
-    rules: &Rules,
-    released: &Released,
-    vacancies: &Vacancies,
-    rng: &mut impl Rng,
-) -> u64 {
-    let chance = vacancies.0.len() as f64 / rules.0.habitat.sites as f64;
-    Binomial::new(released.total, chance).map_or(0, |landing| landing.sample(rng))
-}
-
 /// The empty sites that are settled, which are vacant no longer.
 ///
-/// Landings end to matter when every site is settled: a long tick may bring billions.
-fn take_sites(landings: u64, vacancies: &mut Vacancies, rng: &mut impl Rng) -> Vec<u32> {
-    let empty = vacancies.0.len();
-    let mut free = empty;
-    for _ in 0..landings {
-        if free == 0 {
+/// Propagules land one after the other, each on a random one of N sites. While f sites are free, the
+/// next to settle is the G-th to come, G geometric with chance f/N: only settlers are drawn, not the
+/// billions that a long tick may bring.
+fn take_sites(
+    propagules: u64,
+    sites: usize,
+    vacancies: &mut Vacancies,
+    rng: &mut impl Rng,
+) -> Vec<u32> {
+    let mut free = vacancies.0.len();
+    let mut left = propagules as f64;
+    while free > 0 {
+        left -= geometric(free as f64 / sites as f64, rng);
+        if left < 0.0 {
             break;
         }
-        // Sites still free come first, so a draw beyond them has met a site that is taken.
-        let landed = rng.random_range(0..empty);
-        if landed < free {
-            free -= 1;
-            vacancies.0.swap(landed, free);
-        }
+        let landed = rng.random_range(0..free);
+        free -= 1;
+        vacancies.0.swap(landed, free);
     }
     let taken = vacancies.0.split_off(free);
     if !taken.is_empty() {

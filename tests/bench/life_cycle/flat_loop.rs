@@ -13,14 +13,13 @@ use std::collections::BinaryHeap;
 
 use rand::seq::index;
 use rand::{Rng, RngExt};
-use rand_distr::{Binomial, Distribution};
 use rand_xoshiro::Xoshiro256PlusPlus;
 
 use somadawn::scenario::Settings;
 use somadawn::theory::{Cue, Programme};
 use somadawn::tissue::{Growth, Pace};
 use somadawn::world::components::{HeadStart, PropaguleStock, StockRate, StockSince, StockUntil};
-use somadawn::world::draws::{exponential, mutated, weighted_index};
+use somadawn::world::draws::{exponential, geometric, mutated, weighted_index};
 use somadawn::world::resources::{Event, Genotype, Ledger};
 
 /// One site's colony, or what the last one left.
@@ -294,20 +293,17 @@ impl FlatLoop {
     }
 
     fn settle(&mut self, released: u64, now_h: f64) {
-        let chance = self.vacancies.len() as f64 / self.genotypes.len() as f64;
-        let Ok(landing) = Binomial::new(released, chance) else { return };
-        if released == 0 {
-            return;
-        }
+        let sites = self.genotypes.len() as f64;
         let (empty, mut free) = (self.vacancies.len(), self.vacancies.len());
-        let mut landings = landing.sample(&mut self.rng);
-        while landings > 0 && free > 0 {
-            let landed = self.rng.random_range(0..empty);
-            if landed < free {
-                free -= 1;
-                self.vacancies.swap(landed, free);
+        let mut left = released as f64;
+        while released > 0 && free > 0 {
+            left -= geometric(free as f64 / sites, &mut self.rng);
+            if left < 0.0 {
+                break;
             }
-            landings -= 1;
+            let landed = self.rng.random_range(0..free);
+            free -= 1;
+            self.vacancies.swap(landed, free);
         }
         if free == empty {
             return;
