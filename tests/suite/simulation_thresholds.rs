@@ -115,16 +115,17 @@ fn final_division(cells: usize, interior: f64) -> (f64, f64) {
     settings.returns.viability.interior_effect = interior;
     settings.run.generations = 300;
     settings.run.stop_after_onset = false;
-    let rows = run(&settings, size(5, 20));
+    let rows = run(&settings, size(12, 40));
     let values: Vec<f64> = rows.iter().map(|row| row.division_index.unwrap_or(0.0)).collect();
     mean_and_error(&values)
 }
 
 /// Work that pays at the surface only: a body of 13 has one interior cell, larger ones more and more, and
 /// the division index rises with size though returns diminish; where interior work pays alike, large
-/// bodies stay undivided. Means of 5 replicates lie 10 to 25 standard errors apart (0.03, 0.06, 0.22, 0.65);
-/// 7.5 are asked for, which equal means would reach in less than 1e-3 of seeds (one-sided t; 4 degrees of
-/// freedom at the least, where the odds are 8.5e-4).
+/// bodies stay undivided (about 0.04, 0.06, 0.22, 0.65). Five standard errors between means of 12 replicates
+/// are asked for, which equal means would reach in less than 1e-3 of seeds (one-sided t; 11 degrees of freedom
+/// at the least, where the odds are 2e-4). Five replicates were too few to tell: their means lay 7 to 25 apart
+/// from one set of seeds to the next, where 4 degrees of freedom ask for 7.2.
 #[test]
 fn work_at_the_surface_divides_large_bodies_though_returns_diminish() {
     let steps = [
@@ -136,6 +137,6 @@ fn work_at_the_surface_divides_large_bodies_though_returns_diminish() {
     for pair in [[0, 2], [1, 2], [2, 3]] {
         let [(small, a), (large, b)] = pair.map(|at| steps[at]);
         let apart = (b.0 - a.0) / a.1.hypot(b.1);
-        assert!(apart > 7.5, "{large} is {apart:.1} standard errors above {small}: {steps:?}");
+        assert!(apart > 5.0, "{large} is {apart:.1} standard errors above {small}: {steps:?}");
     }
 }
