@@ -70,7 +70,7 @@ impl Bracket {
     /// of a replicate to go astray is below 4.5 % (8 %) at a confidence of 99 %. That bound is crude:
     /// division indices below ended at 0.26 at most, of the 0.5 that count for five censuses in a row,
     /// and onsets above came before generation 420 of 600. As for power: were the chance of an onset
-    /// below a half, ten replicates without any would come up in 1 of 1,000 sets of seeds.
+    /// a half or more, ten replicates without any would come up in at most 1 of 1,000 sets of seeds.
     fn check(&self) {
         let below = scenario(self.cells, 0.92 * self.global, self.cue);
         let rows = run(&below, size(10, 100));
