@@ -211,6 +211,9 @@ impl Reader<'_> {
                 viability: self.task(&p::VIABILITY),
                 fecundity: self.task(&p::FECUNDITY),
             },
+            support: None,
+            nutrient: None,
+            waste: None,
             traits: self.traits(),
             run: self.run(),
             onset: self.onset(),
@@ -233,6 +236,8 @@ impl Reader<'_> {
             upkeep_eu_per_h: self.take(&p::UPKEEP),
             division_cost_eu: self.take(&p::DIVISION_COST),
             division_cv: self.take(&p::DIVISION_CV),
+            starvation_h: 24.0,
+            turnover_per_h: 0.0,
         }
     }
 
