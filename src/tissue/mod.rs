@@ -20,7 +20,7 @@ pub use exposure::ExposureMap;
 pub use fields::{Fields, Nutrient, Sharing, Waste};
 pub use graph::{BodyGraph, SITES_AROUND};
 pub use growth::{Arrangement, Growth, Pace};
-pub use lattice::{Lattice, NEIGHBOURS, compact_radius_um};
+pub use lattice::{Lattice, NEIGHBOURS, compact_radius_um, site_position_um};
 pub use plan::Plan;
 pub use steady::SteadySolver;
 
