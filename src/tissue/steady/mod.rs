@@ -12,8 +12,8 @@
 mod contacts;
 mod elimination;
 mod linear;
-mod reaction;
 mod reacting;
+mod reaction;
 mod support;
 #[cfg(test)]
 mod tests;

@@ -9,7 +9,7 @@ use crate::tissue::graph::BodyGraph;
 /// With leak or without, the operator's inverse has row sums of at most 1 (it averages outputs), so that
 /// no residual above a share of the least support anywhere means no error above that share; support
 /// itself in place of the least gives the same for cells with like neighbours.
-const SETTLED: f64 = 5e-7;
+const SETTLED: f64 = 2e-6;
 /// Of the first residual, what is lost in rounding.
 const ROUNDING: f64 = 1e-15;
 
@@ -60,7 +60,7 @@ impl SteadySolver {
             if size > worth_a_look && size > lost {
                 return false;
             }
-            worth_a_look *= 0.1;
+            worth_a_look *= 0.4;
             settled = residual.iter().zip(x).all(|(r, x)| r.abs() <= strict * x && *x > 0.0);
             settled || size <= lost
         });

@@ -74,7 +74,6 @@ pub fn spread_support(
     }
 }
 
-
 /// Sums of viability and fecundity outputs, in several strands that the processor adds side by side.
 fn summed(body: &[Output]) -> [f64; 2] {
     const STRANDS: usize = 4;
