@@ -4,6 +4,7 @@ use bevy_ecs::prelude::*;
 
 use super::only_table;
 use crate::tissue::SteadySolver;
+use crate::tissue::fields::viability;
 use crate::world::components::{CellCount, Output, Support, Vitals};
 use crate::world::nursery::SharedBodies;
 use crate::world::resources::{Maturing, Rules};
@@ -69,7 +70,7 @@ pub fn spread_support(
         for (cell, support) in received[rows.clone()].iter_mut().zip(&*support) {
             *cell = Support(*support as f32);
         }
-        vitals[here].viability = crate::tissue::fields::viability(support);
+        vitals[here].viability = viability(support);
         vitals[here].fecundity = summed(&outputs[rows])[1];
     }
 }
