@@ -28,6 +28,15 @@ impl BodyGraph {
         }
     }
 
+    /// Forgets all cells, to be filled anew in the same memory.
+    pub fn clear(&mut self) {
+        self.links.clear();
+        self.starts.clear();
+        self.starts.push(0);
+        self.empty.clear();
+        self.open.clear();
+    }
+
     /// Adds the next cell: the numbers of the cells it touches, the empty sites it touches, and those
     /// of them that the surrounding water reaches.
     pub fn push(&mut self, touching: impl IntoIterator<Item = u32>, empty: u8, open: u8) {

@@ -123,6 +123,11 @@ impl Lattice {
         (self.side - 1 - 2 * MARGIN).unsigned_abs() as usize
     }
 
+    /// Places along an edge of the grid.
+    pub(super) const fn side(&self) -> i32 {
+        self.side
+    }
+
     /// Difference of grid places per unit step along each axis.
     pub(super) const fn strides(&self) -> [i32; 3] {
         [1, self.side, self.side * self.side]
