@@ -4,9 +4,12 @@
 //! `s * n .. (s + 1) * n` of the one table of cells; colonies likewise are rows of theirs. A dead
 //! colony's rows are overwritten by the next.
 
+use std::ops::Range;
+
 use bevy_ecs::prelude::*;
 
-/// Where a cell lies in its colony's body: a place of the body's lattice.
+/// Where a cell lies in its colony's body: a place of the body's lattice, or the cell's number in a
+/// shared body.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct Place(pub u32);
 
@@ -43,6 +46,11 @@ pub struct Budget {
     pub germ_eu_per_h: f32,
 }
 
+/// What a cell receives of the viability task's product where support is local; where it is pooled,
+/// the colony's viability says the same for all cells.
+#[derive(Component, Debug, Clone, Copy, Default)]
+pub struct Support(pub f32);
+
 /// What a cell's budgets yield (dimensionless).
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct Output {
@@ -73,6 +81,8 @@ pub struct CellBundle {
     pub budget: Budget,
     /// Its yields.
     pub output: Output,
+    /// What it receives.
+    pub support: Support,
 }
 
 /// Where a colony stands in its life; a dead colony leaves its site empty.
@@ -107,6 +117,14 @@ impl Default for Lifespan {
 /// Cells a colony holds, living or until its site is settled anew.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct CellCount(pub u32);
+
+impl CellCount {
+    /// Rows of the cells of the colony of `site`, where each site has room for `capacity` cells.
+    #[must_use]
+    pub const fn rows(self, site: usize, capacity: usize) -> Range<usize> {
+        site * capacity..site * capacity + self.0 as usize
+    }
+}
 
 /// Body means by which an adult's cues are centred.
 #[derive(Component, Debug, Clone, Copy, Default)]

@@ -5,6 +5,7 @@
 pub mod components;
 pub mod draws;
 pub mod mechanisms;
+pub mod nursery;
 pub mod population;
 pub mod resources;
 pub mod schedule;

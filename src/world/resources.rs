@@ -8,19 +8,24 @@ use rand_xoshiro::Xoshiro256PlusPlus;
 
 use crate::scenario::Settings;
 use crate::theory::Programme;
-use crate::tissue::{Growth, Pace};
+use crate::tissue::Pace;
 
 /// The scenario, as the mechanisms read it.
 #[derive(Resource, Debug, Clone)]
 pub struct Rules(pub Settings);
 
 impl Rules {
-    /// Income of a fully fed cell of a programme after the tax on responsiveness, eu/h:
-    /// `e = e0 max(0, 1 - cost_per_unit * sum_k |g_k|)`.
+    /// Share of their income that cells of a programme keep from the tax on responsiveness:
+    /// `max(0, 1 - cost_per_unit * sum_k |g_k|)`.
+    #[must_use]
+    pub fn kept_share(&self, programme: &Programme) -> f64 {
+        (1.0 - self.0.traits.cost_per_unit * programme.total_responsiveness()).max(0.0)
+    }
+
+    /// Income of a fully fed cell of a programme after tax, eu/h.
     #[must_use]
     pub fn taxed_income_eu_per_h(&self, programme: &Programme) -> f64 {
-        let tax = self.0.traits.cost_per_unit * programme.total_responsiveness();
-        self.0.budget.income_eu_per_h * (1.0 - tax).max(0.0)
+        self.0.budget.income_eu_per_h * self.kept_share(programme)
     }
 
     /// How fast the cells of a programme save while they grow.
@@ -38,10 +43,6 @@ impl Rules {
 /// The replicate's one source of randomness.
 #[derive(Resource, Debug, Clone)]
 pub struct Random(pub Xoshiro256PlusPlus);
-
-/// Working memory in which bodies grow.
-#[derive(Resource, Debug, Clone)]
-pub struct Nursery(pub Growth);
 
 /// The hours of the tick at hand, and generations so far.
 #[derive(Resource, Debug, Clone)]
@@ -180,6 +181,8 @@ pub struct Ledger {
     pub settlements: u64,
     /// Colonies that died.
     pub deaths: u64,
+    /// Colonies that have stopped growing short of adult size, counted when they settle.
+    pub never_matured: u64,
     /// Propagules released over their whole life by colonies that died.
     pub lifetime_propagules: u64,
     /// Parents' ages at the settlements since the last census, h.

@@ -23,6 +23,7 @@ pub fn tick_schedule() -> Schedule {
             cues::read_cues,
             budgets::split_budgets,
             support::pool_support,
+            support::spread_support,
             ageing::set_lifespans,
             ageing::bury_colonies,
             reproduction::release_propagules,

@@ -28,6 +28,7 @@ mod simulation_drift;
 mod simulation_fixation;
 mod simulation_lifetime;
 mod simulation_reproducible;
+mod simulation_space;
 mod simulation_support;
 mod simulation_thresholds;
 mod stats_binomial;

@@ -5,7 +5,7 @@ use rand::Rng;
 
 use super::only_table;
 use crate::theory::Cue;
-use crate::world::components::{CueMeans, DivisionLabel, Exposed, NoiseDraw};
+use crate::world::components::{CellCount, CueMeans, DivisionLabel, Exposed, NoiseDraw};
 use crate::world::resources::{GenePool, Maturing, Random, Rules};
 
 /// Draws each cell's luck and finds the means by which the other cues are centred.
@@ -15,19 +15,20 @@ pub fn read_cues(
     pool: Res<GenePool>,
     mut random: ResMut<Random>,
     mut cells: Query<(&DivisionLabel, &Exposed, &mut NoiseDraw)>,
-    mut colonies: Query<&mut CueMeans>,
+    mut colonies: Query<(&CellCount, &mut CueMeans)>,
 ) {
     if maturing.0.is_empty() {
         return;
     }
     let (labels, exposed, mut draws) = only_table(cells.contiguous_iter_mut());
     let draws = draws.bypass_change_detection();
-    let mut means = only_table(colonies.contiguous_iter_mut());
+    let (counts, mut means) = only_table(colonies.contiguous_iter_mut());
     let means = means.bypass_change_detection();
     let cues = rules.0.traits.cues;
-    let n = rules.0.body.adult_cells;
+    let capacity = rules.0.body.adult_cells;
     for &site in &maturing.0 {
-        let rows = site as usize * n..(site as usize + 1) * n;
+        let rows = counts[site as usize].rows(site as usize, capacity);
+        let n = rows.len();
         let mean = &mut means[site as usize];
         if cues.contains(Cue::Noise) {
             let p = pool.0[site as usize].programme.noise_probability();

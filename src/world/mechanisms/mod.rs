@@ -10,9 +10,11 @@ pub mod clock;
 pub mod cues;
 pub mod growth;
 pub mod maturity;
+mod plots;
 pub mod reproduction;
 pub mod settlement;
 pub mod support;
+pub(super) mod yields;
 
 use bevy_ecs::query::QueryNotDenseError;
 

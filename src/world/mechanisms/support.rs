@@ -3,7 +3,9 @@
 use bevy_ecs::prelude::*;
 
 use super::only_table;
-use crate::world::components::{Output, Vitals};
+use crate::tissue::SteadySolver;
+use crate::world::components::{CellCount, Output, Support, Vitals};
+use crate::world::nursery::SharedBodies;
 use crate::world::resources::{Maturing, Rules};
 
 /// Pools support over each colony that becomes adult: `S_i = mean_j v_j`, so `V = mean_j v_j`; and
@@ -12,21 +14,69 @@ pub fn pool_support(
     rules: Res<Rules>,
     maturing: Res<Maturing>,
     mut cells: Query<&Output>,
-    mut colonies: Query<&mut Vitals>,
+    mut colonies: Query<(&CellCount, &mut Vitals)>,
 ) {
-    if maturing.0.is_empty() {
+    if maturing.0.is_empty() || rules.0.support.is_some() {
         return;
     }
     let outputs = only_table(cells.contiguous_iter_mut());
-    let mut vitals = only_table(colonies.contiguous_iter_mut());
+    let (counts, mut vitals) = only_table(colonies.contiguous_iter_mut());
     let vitals = vitals.bypass_change_detection();
-    let n = rules.0.body.adult_cells;
     for &site in &maturing.0 {
-        let body = &outputs[site as usize * n..(site as usize + 1) * n];
+        let here = site as usize;
+        let body = &outputs[counts[here].rows(here, rules.0.body.adult_cells)];
         let [viability, fecundity] = summed(body);
-        vitals[site as usize].viability = viability / n as f64;
-        vitals[site as usize].fecundity = fecundity;
+        vitals[here].viability = viability / body.len() as f64;
+        vitals[here].fecundity = fecundity;
     }
+}
+
+/// Working memory of local support.
+#[derive(Debug, Default)]
+pub struct Spreading {
+    solver: SteadySolver,
+    output: Vec<f64>,
+    support: Vec<f64>,
+}
+
+/// Spreads support by local transport over each colony that becomes adult, `V = n / sum_i (1/S_i)`
+/// (0 if any `S_i` is 0); and sums fecundity, `B = sum_i b_i`.
+pub fn spread_support(
+    rules: Res<Rules>,
+    maturing: Res<Maturing>,
+    bodies: Res<SharedBodies>,
+    mut memory: Local<Spreading>,
+    mut cells: Query<(&Output, &mut Support)>,
+    mut colonies: Query<(&CellCount, &mut Vitals)>,
+) {
+    let Some(sharing) = rules.0.sharing() else { return };
+    if maturing.0.is_empty() {
+        return;
+    }
+    let (outputs, mut received) = only_table(cells.contiguous_iter_mut());
+    let received = received.bypass_change_detection();
+    let (counts, mut vitals) = only_table(colonies.contiguous_iter_mut());
+    let vitals = vitals.bypass_change_detection();
+    let Spreading { solver, output, support } = &mut *memory;
+    for &site in &maturing.0 {
+        let here = site as usize;
+        let Some(body) = bodies.of(here) else { continue };
+        let rows = counts[here].rows(here, rules.0.body.adult_cells);
+        output.clear();
+        output.extend(outputs[rows.clone()].iter().map(|cell| f64::from(cell.viability)));
+        support.resize(output.len(), 0.0);
+        solver.support(&body.development.graph, &sharing, output, support);
+        for (cell, support) in received[rows.clone()].iter_mut().zip(&*support) {
+            *cell = Support(*support as f32);
+        }
+        vitals[here].viability = viability(support);
+        vitals[here].fecundity = summed(&outputs[rows])[1];
+    }
+}
+
+/// Harmonic mean of support, 0 if any is 0.
+fn viability(support: &[f64]) -> f64 {
+    support.len() as f64 / support.iter().map(|s| s.recip()).sum::<f64>()
 }
 
 /// Sums of viability and fecundity outputs, in several strands that the processor adds side by side.
