@@ -165,6 +165,24 @@ pub enum FaultKind {
         /// The ceiling.
         limit: u64,
     },
+    /// Sites that make no square torus.
+    #[error("`habitat.sites` = {sites} is no square number, but a torus is as wide as it is long")]
+    NotSquare {
+        /// Sites.
+        sites: usize,
+        /// The next square below.
+        below: usize,
+        /// The next square above.
+        above: usize,
+    },
+    /// A chain that is too long for the lattice's coordinates.
+    #[error("`body.adult_cells` = {cells} makes too long a chain; it can have {limit} cells")]
+    LongChain {
+        /// Cells of an adult colony.
+        cells: usize,
+        /// The ceiling.
+        limit: usize,
+    },
     /// A point of a return curve breaks the curve's rules.
     #[error("`{key}`: {problem}")]
     Points {
@@ -261,6 +279,10 @@ impl FaultKind {
                 format!("add \"{cue}\" to `traits.cues`, or remove the start")
             }
             Self::TooManyCells { .. } => "use fewer sites or smaller bodies".into(),
+            Self::NotSquare { below, above, .. } => {
+                format!("the nearest squares are {below} and {above}")
+            }
+            Self::LongChain { .. } => "use a smaller body, or another `body.plan`".into(),
             Self::OverrideForm { .. } => "write, for instance, body.adult_cells=32".into(),
             _ => return None,
         })
