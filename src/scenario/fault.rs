@@ -175,14 +175,6 @@ pub enum FaultKind {
         /// The next square above.
         above: usize,
     },
-    /// A chain that is too long for the lattice's coordinates.
-    #[error("`body.adult_cells` = {cells} makes too long a chain; it can have {limit} cells")]
-    LongChain {
-        /// Cells of an adult colony.
-        cells: usize,
-        /// The ceiling.
-        limit: usize,
-    },
     /// A point of a return curve breaks the curve's rules.
     #[error("`{key}`: {problem}")]
     Points {
@@ -282,7 +274,6 @@ impl FaultKind {
             Self::NotSquare { below, above, .. } => {
                 format!("the nearest squares are {below} and {above}")
             }
-            Self::LongChain { .. } => "use a smaller body, or another `body.plan`".into(),
             Self::OverrideForm { .. } => "write, for instance, body.adult_cells=32".into(),
             _ => return None,
         })

@@ -4,9 +4,9 @@ use crate::theory::Cue;
 
 use super::fault::FaultKind;
 use super::read::Reader;
-use super::registry::parameters::{self as p, LONGEST_CHAIN, MOST_CELLS};
+use super::registry::parameters::{self as p, MOST_CELLS};
 use super::registry::{self, Described};
-use super::settings::{Baseline, Layout, Plan, Settings};
+use super::settings::{Baseline, Layout, Settings};
 use super::tree::Content;
 
 /// Notes every pair of keys that do not fit each other. Keys already at fault are left alone.
@@ -14,7 +14,6 @@ pub(crate) fn check(settings: &Settings, reader: &mut Reader<'_>) {
     orders(settings, reader);
     cells(settings, reader);
     square(settings, reader);
-    chain(settings, reader);
     starts(settings, reader);
     conditions(reader);
 }
@@ -96,15 +95,6 @@ fn square(settings: &Settings, reader: &mut Reader<'_>) {
     let written = if reader.find(p::SITES.path).is_some() { p::SITES.path } else { p::LAYOUT.path };
     let (below, above) = (side * side, (side + 1) * (side + 1));
     reader.note(written, FaultKind::NotSquare { sites, below, above });
-}
-
-fn chain(settings: &Settings, reader: &mut Reader<'_>) {
-    let cells = settings.body.adult_cells;
-    let fits = settings.body.plan != Plan::Chain || cells <= LONGEST_CHAIN;
-    if !fits && reader.sound(&[p::PLAN.path, p::ADULT_CELLS.path]) {
-        let kind = FaultKind::LongChain { cells, limit: LONGEST_CHAIN };
-        reader.note(p::ADULT_CELLS.path, kind);
-    }
 }
 
 fn starts(settings: &Settings, reader: &mut Reader<'_>) {

@@ -209,14 +209,6 @@ fn a_torus_is_a_square() {
 }
 
 #[test]
-fn a_chain_has_an_end() {
-    refuses(
-        "[body]\nplan = \"chain\"\nadult_cells = 60_001",
-        &["`body.adult_cells` = 60001 makes too long a chain; it can have 60000 cells", ":4:15]"],
-    );
-}
-
-#[test]
 fn files_that_are_no_scenario() {
     Desk::with("").refuses(&[], &["scenario `pond.toml` has a fault", "`title` is missing"]);
     Desk::with([0x89, b'P', 0xff, 0xfe]).refuses(&[], &["`pond.toml` is not a text file (byte 0"]);

@@ -10,10 +10,6 @@ use super::{Condition, Described, Parameter};
 /// Most cells of all colonies together: about 200 bytes each in memory.
 pub(crate) const MOST_CELLS: u64 = 100_000_000;
 
-/// Most cells of a chain: lattice coordinates are whole numbers of 16 bits, and those of a chain
-/// reach half its length to either side.
-pub(crate) const LONGEST_CHAIN: usize = 60_000;
-
 /// Least diameter of a cell, um: far below any cell, and far above where conductances underflow.
 const LEAST_DIAMETER_UM: f64 = 1e-3;
 
