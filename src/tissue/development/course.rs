@@ -170,6 +170,11 @@ impl Course {
 
     /// Brings reserves up to date, solves the fields and sets what everyone earns from now on.
     fn solve(&mut self) {
+        if self.state.grown {
+            self.solver.work_fully();
+        } else {
+            self.solver.work_quickly();
+        }
         let now_h = self.state.now_h;
         self.cells.save(now_h);
         self.incomes.clear();
