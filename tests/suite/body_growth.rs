@@ -123,7 +123,7 @@ fn growth_takes_longer_where_cells_share_food() {
         Ending::Stunted(hours) => panic!("stunted after {hours} h"),
     };
     approx::assert_relative_eq!(hours(1e-9), 56.0, max_relative = 1e-6);
-    assert!(hours(0.1) > 56.5 && hours(0.5) > hours(0.1) + 1.0);
+    assert!(hours(0.5) > 56.5 && hours(2.0) > hours(0.5) + 1.0);
 }
 
 /// What is compared between two ways of growing.
