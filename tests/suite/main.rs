@@ -1,5 +1,7 @@
 //! Checks of the library and the program against values from outside, one file per subject.
 
+mod body_growth;
+mod body_hunger;
 mod command_check;
 mod command_evolve;
 mod command_evolve_extremes;
