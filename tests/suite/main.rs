@@ -1,6 +1,7 @@
 //! Checks of the library and the program against values from outside, one file per subject.
 
 mod command_check;
+mod command_check_space;
 mod command_evolve;
 mod command_evolve_extremes;
 mod command_evolve_refusals;
