@@ -3,6 +3,7 @@
 mod body_growth;
 mod body_hunger;
 mod command_check;
+mod command_check_space;
 mod command_evolve;
 mod command_evolve_extremes;
 mod command_evolve_refusals;
