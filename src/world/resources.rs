@@ -136,6 +136,16 @@ pub struct Genotype {
     pub programme: Programme,
     /// Which founder of the population it descends from.
     pub founder: u32,
+    /// Neutral marker that never recurs; on a torus a settler now and then starts a new one.
+    pub line: u64,
+}
+
+impl Genotype {
+    /// What the propagule that founds site `site` of a population carries: a line of its own.
+    #[must_use]
+    pub fn of_founder(programme: Programme, site: u32) -> Self {
+        Self { programme, founder: site, line: u64::from(site) }
+    }
 }
 
 /// The genotypes cells carry; while bodies are clonal, entry s belongs to the colony of site s.

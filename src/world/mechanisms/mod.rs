@@ -9,6 +9,7 @@ pub mod budgets;
 pub mod clock;
 pub mod cues;
 pub mod growth;
+pub mod landing;
 pub mod maturity;
 mod plots;
 pub mod reproduction;
