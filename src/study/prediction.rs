@@ -1,7 +1,11 @@
 //! What theory says of a scenario, without simulating a population.
 //!
 //! The time of growth is that of synchronous rounds, as with `division_cv = 0`, also where division
-//! costs vary; the labels that growth leaves are then those of a sample of bodies.
+//! costs vary; the labels that growth leaves are then those of a sample of bodies. Where it matters
+//! where in the body a cell lies, theory is told of a sample of bodies cell by cell.
+
+mod bodies;
+mod reach;
 
 use std::collections::BTreeMap;
 
@@ -104,7 +108,7 @@ pub fn predict(settings: &Settings) -> Prediction {
     let generalist = model.generalist();
     let selection = model.selection_at(&generalist);
     let best = model.best_programme(&generalist);
-    let better_elsewhere = best.outdoes(&generalist, BETTER);
+    let better_elsewhere = best.outdoes(BETTER);
     Prediction {
         title: settings.title.clone(),
         generalist: generalist_part(&generalist),
@@ -142,8 +146,13 @@ pub fn generalist_of(settings: &Settings) -> Generalist {
 #[must_use]
 pub fn model(settings: &Settings) -> Model {
     let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
-    let cues = settings.traits.cues;
-    Model::new(life_history(settings), returns, cues, &compositions(settings))
+    let (life, cues) = (life_history(settings), settings.traits.cues);
+    let model = if settings.is_spatial() {
+        Model::of_placed(life, returns, cues, bodies::placed_bodies(settings))
+    } else {
+        Model::new(life, returns, cues, &compositions(settings))
+    };
+    model
         .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
         .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
 }

@@ -3,13 +3,16 @@
 /// Neighbour sites of a lattice site.
 pub const SITES_AROUND: usize = 12;
 
+/// Stands in a row of [`BodyGraph::rows`] for a neighbour site without a cell.
+pub(super) const NOBODY: u32 = u32::MAX;
+
 /// Who touches whom in a body, in the order of cells.
 #[derive(Debug, Clone, PartialEq, Eq, Default)]
 pub struct BodyGraph {
-    /// Touching cells of all cells, one cell's after the other's.
-    links: Vec<u32>,
-    /// Where each cell's touching cells begin in `links`; one entry more than cells.
-    starts: Vec<u32>,
+    /// Touching cells of each cell, filled up with [`NOBODY`]: rows of one length let the solver go
+    /// through them without a branch.
+    rows: Vec<[u32; SITES_AROUND]>,
+    contacts: Vec<u8>,
     empty: Vec<u8>,
     open: Vec<u8>,
 }
@@ -18,21 +21,33 @@ impl BodyGraph {
     /// A body without cells, to which [`Self::push`] adds.
     #[must_use]
     pub fn with_capacity(cells: usize) -> Self {
-        let mut starts = Vec::with_capacity(cells + 1);
-        starts.push(0);
         Self {
-            links: Vec::with_capacity(SITES_AROUND * cells),
-            starts,
+            rows: Vec::with_capacity(cells),
+            contacts: Vec::with_capacity(cells),
             empty: Vec::with_capacity(cells),
             open: Vec::with_capacity(cells),
         }
     }
 
-    /// Adds the next cell: the numbers of the cells it touches, the empty sites it touches, and those
-    /// of them that the surrounding water reaches.
+    /// Forgets all cells, to be filled anew in the same memory.
+    pub fn clear(&mut self) {
+        self.rows.clear();
+        self.contacts.clear();
+        self.empty.clear();
+        self.open.clear();
+    }
+
+    /// Adds the next cell: the numbers of the cells it touches (12 at most, any more are left out), the
+    /// empty sites it touches, and those of them that the surrounding water reaches.
     pub fn push(&mut self, touching: impl IntoIterator<Item = u32>, empty: u8, open: u8) {
-        self.links.extend(touching);
-        self.starts.push(self.links.len() as u32);
+        let mut row = [NOBODY; SITES_AROUND];
+        let mut contacts = 0;
+        for (place, cell) in row.iter_mut().zip(touching) {
+            *place = cell;
+            contacts += 1;
+        }
+        self.rows.push(row);
+        self.contacts.push(contacts);
         self.empty.push(empty);
         self.open.push(open);
     }
@@ -40,13 +55,24 @@ impl BodyGraph {
     /// Number of cells.
     #[must_use]
     pub const fn cells(&self) -> usize {
-        self.empty.len()
+        self.rows.len()
     }
 
     /// Cells that touch `cell`.
     #[must_use]
     pub fn touching(&self, cell: usize) -> &[u32] {
-        &self.links[self.starts[cell] as usize..self.starts[cell + 1] as usize]
+        &self.rows[cell][..usize::from(self.contacts[cell])]
+    }
+
+    /// Number of cells that touch each cell.
+    #[must_use]
+    pub fn contacts(&self) -> &[u8] {
+        &self.contacts
+    }
+
+    /// Touching cells of each cell, filled up with [`NOBODY`].
+    pub(super) fn rows(&self) -> &[[u32; SITES_AROUND]] {
+        &self.rows
     }
 
     /// Empty sites next to each cell; a cell is exposed when it has any.

@@ -72,7 +72,7 @@ impl ColonyView<'_> {
         let site = match (self.nursery, self.body) {
             (_, Some(body)) => body.development.coordinates[cell],
             (Nursery::Own(growth), _) => {
-                growth.lattice().coordinates(self.places[cell].0).map(i16::from)
+                growth.lattice().coordinates(self.places[cell].0).map(i32::from)
             }
             (Nursery::Shared(_), None) => [0; 3],
         };

@@ -69,14 +69,9 @@ pub fn spread_support(
         for (cell, support) in received[rows.clone()].iter_mut().zip(&*support) {
             *cell = Support(*support as f32);
         }
-        vitals[here].viability = viability(support);
+        vitals[here].viability = crate::tissue::fields::viability(support);
         vitals[here].fecundity = summed(&outputs[rows])[1];
     }
-}
-
-/// Harmonic mean of support, 0 if any is 0.
-fn viability(support: &[f64]) -> f64 {
-    support.len() as f64 / support.iter().map(|s| s.recip()).sum::<f64>()
 }
 
 /// Sums of viability and fecundity outputs, in several strands that the processor adds side by side.
