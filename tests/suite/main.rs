@@ -39,6 +39,8 @@ mod simulation_reproducible;
 mod simulation_space;
 mod simulation_support;
 mod simulation_thresholds;
+mod simulation_torus;
+mod simulation_torus_relatedness;
 mod stats_binomial;
 mod stats_division_of_labour;
 mod stats_mean;
