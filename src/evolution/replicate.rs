@@ -40,7 +40,7 @@ impl<'s> Replicate<'s> {
     #[must_use]
     pub fn found(settings: &'s Settings, start: Start, number: u32) -> Self {
         let seed = replicate_seed(settings.seed, 0, u64::from(number));
-        let founder = |site| Genotype { programme: start.programme, founder: site };
+        let founder = |site| Genotype::of_founder(start.programme, site);
         let population = Population::founded(settings, start.tick_h, generator(seed), founder);
         Self {
             settings,
@@ -125,8 +125,7 @@ impl<'s> Replicate<'s> {
     }
 
     fn take_census(&mut self) {
-        let onset = &self.settings.onset;
-        let row = census::take(&mut self.population, onset, self.number);
+        let row = census::take(&mut self.population, self.settings, self.number);
         let diameter_um = self.settings.body.cell_diameter_um;
         let mut sample =
             |stage| bodies::sample(&mut self.population, self.number, stage, diameter_um);
@@ -141,8 +140,9 @@ impl<'s> Replicate<'s> {
 
     fn row(&mut self) -> ReplicateRow {
         let last = self.censuses.last().filter(|_| self.population.alive() > 0);
-        let (division_index, soma_fraction) =
-            last.map_or((None, None), |row| (row.division_index, row.soma_share));
+        let (division_index, soma_fraction, adult_cells) = last.map_or((None, None, None), |row| {
+            (row.division_index, row.soma_share, row.adult_cells)
+        });
         let outcome = match (self.watch.onset(), self.population.alive()) {
             (Some(_), _) => Outcome::Onset,
             (None, 0) => Outcome::Extinct,
@@ -168,6 +168,8 @@ impl<'s> Replicate<'s> {
             route_exposure: route(Cue::Exposure),
             route_income: route(Cue::Income),
             mean_fitness,
+            adult_cells,
+            never_matured: self.population.ledger().never_matured,
         }
     }
 

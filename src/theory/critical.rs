@@ -27,7 +27,7 @@ impl Model {
         let generalist = self.generalist();
         let local = self.selection_at(&generalist);
         local.iter().any(super::selection::CueSelection::is_favoured)
-            || self.best_programme(&generalist).outdoes(&generalist, JUST_BETTER)
+            || self.best_programme(&generalist).outdoes(JUST_BETTER)
     }
 }
 

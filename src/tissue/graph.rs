@@ -29,6 +29,14 @@ impl BodyGraph {
         }
     }
 
+    /// Forgets all cells, to be filled anew in the same memory.
+    pub fn clear(&mut self) {
+        self.rows.clear();
+        self.contacts.clear();
+        self.empty.clear();
+        self.open.clear();
+    }
+
     /// Adds the next cell: the numbers of the cells it touches (12 at most, any more are left out), the
     /// empty sites it touches, and those of them that the surrounding water reaches.
     pub fn push(&mut self, touching: impl IntoIterator<Item = u32>, empty: u8, open: u8) {
@@ -42,14 +50,6 @@ impl BodyGraph {
         self.contacts.push(contacts);
         self.empty.push(empty);
         self.open.push(open);
-    }
-
-    /// Takes all cells away, to push others in the same memory.
-    pub fn clear(&mut self) {
-        self.rows.clear();
-        self.contacts.clear();
-        self.empty.clear();
-        self.open.clear();
     }
 
     /// Number of cells.

@@ -96,7 +96,7 @@ impl Lattice {
     /// Position of a place relative to the body's centre, um.
     #[must_use]
     pub fn position_um(&self, place: u32, cell_diameter_um: f64) -> [f64; 3] {
-        site_position_um(self.coordinates(place).map(i16::from), cell_diameter_um)
+        site_position_um(self.coordinates(place).map(i32::from), cell_diameter_um)
     }
 
     /// The 12 places next to `place`.
@@ -121,6 +121,11 @@ impl Lattice {
     /// The largest difference of a coordinate between two sites of a body.
     pub(super) const fn span(&self) -> usize {
         (self.side - 1 - 2 * MARGIN).unsigned_abs() as usize
+    }
+
+    /// Places along an edge of the grid.
+    pub(super) const fn side(&self) -> i32 {
+        self.side
     }
 
     /// Difference of grid places per unit step along each axis.
@@ -174,7 +179,7 @@ fn grid_coordinates(half: i32) -> Vec<[i8; 3]> {
 
 /// Position of the site with those coordinates, um; a coordinate unit is `d / sqrt(2)`.
 #[must_use]
-pub fn site_position_um(site: [i16; 3], cell_diameter_um: f64) -> [f64; 3] {
+pub fn site_position_um(site: [i32; 3], cell_diameter_um: f64) -> [f64; 3] {
     site.map(|c| f64::from(c) * cell_diameter_um / SQRT_2)
 }
 

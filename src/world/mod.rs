@@ -3,6 +3,7 @@
 //! Nothing here knows of files or of replicates.
 
 pub mod components;
+pub mod dispersal;
 pub mod draws;
 pub mod mechanisms;
 pub mod nursery;

@@ -10,8 +10,8 @@ use super::components::{
 use super::mechanisms::only_table;
 use super::nursery::{Nursery, SharedBodies, SharedBody};
 use super::resources::{
-    Calendar, Clock, GenePool, Genotype, Ledger, Maturing, Random, Released, Rules, Settler,
-    Settlers, Vacancies,
+    Calendar, Clock, EarlierReleases, GenePool, Genotype, Ledger, Maturing, Random, Released,
+    Rules, Settler, Settlers, Vacancies,
 };
 use super::schedule::{founding_schedule, tick_schedule};
 use crate::scenario::Settings;
@@ -72,7 +72,7 @@ impl ColonyView<'_> {
         let site = match (self.nursery, self.body) {
             (_, Some(body)) => body.development.coordinates[cell],
             (Nursery::Own(growth), _) => {
-                growth.lattice().coordinates(self.places[cell].0).map(i16::from)
+                growth.lattice().coordinates(self.places[cell].0).map(i32::from)
             }
             (Nursery::Shared(_), None) => [0; 3],
         };
@@ -122,11 +122,12 @@ impl Population {
         world.init_resource::<Calendar>();
         world.init_resource::<Maturing>();
         world.init_resource::<Vacancies>();
+        world.init_resource::<EarlierReleases>();
         world.init_resource::<Ledger>();
         founding_schedule().run(&mut world);
         world.resource_mut::<Clock>().generation = 0.0;
-        *world.resource_mut::<Ledger>() =
-            Ledger { cell_lives: world.resource::<Ledger>().cell_lives, ..Ledger::default() };
+        let &Ledger { cell_lives, never_matured, .. } = world.resource::<Ledger>();
+        *world.resource_mut::<Ledger>() = Ledger { cell_lives, never_matured, ..Ledger::default() };
         Self {
             cells: QueryState::new(&mut world),
             colonies: QueryState::new(&mut world),
@@ -173,6 +174,13 @@ impl Population {
         let (phases, _, _) = only_table(self.colonies.contiguous_iter(&self.world));
         let pool = &self.world.resource::<GenePool>().0;
         pool.iter().zip(phases).filter(|(_, phase)| **phase != Phase::Empty).map(|(g, _)| g)
+    }
+
+    /// Line of the colony on every site, none where a site is empty.
+    pub fn lines(&mut self) -> impl Iterator<Item = Option<u64>> {
+        let (phases, _, _) = only_table(self.colonies.contiguous_iter(&self.world));
+        let pool = &self.world.resource::<GenePool>().0;
+        pool.iter().zip(phases).map(|(g, phase)| (*phase != Phase::Empty).then_some(g.line))
     }
 
     /// Adult colonies in site order.

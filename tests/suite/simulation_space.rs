@@ -146,7 +146,7 @@ fn propagules_by_hand(settings: &Settings, programme: &Programme) -> f64 {
 
 /// Lifetime propagules per colony that died, from when the start is forgotten.
 fn measured(settings: &Settings, programme: &Programme, seed: u64) -> f64 {
-    let founder = |site| Genotype { programme: *programme, founder: site };
+    let founder = |site| Genotype::of_founder(*programme, site);
     let tick_h = start(settings).tick_h;
     let mut population = Population::founded(settings, tick_h, generator(seed), founder);
     let mut run_to = |deaths: u64| {
@@ -197,7 +197,7 @@ fn cells_that_read_their_income_leave_what_theory_expects() {
 fn adults_of(settings: &Settings) -> Population {
     let mut programme = Programme::generalist(0.1);
     programme.responsiveness[Cue::Noise.index()] = 2.0;
-    let founder = |site| Genotype { programme, founder: site };
+    let founder = |site| Genotype::of_founder(programme, site);
     let mut population = Population::founded(settings, 1.0, generator(21), founder);
     while population.adults().next().is_none() {
         population.tick();
@@ -274,7 +274,7 @@ fn evolved(exponents: [f64; 2], seed: u64) -> f64 {
     settings.traits.mutation_probability = 0.1;
     settings.traits.mutation_sd = 0.3;
     let start = start(&settings);
-    let founder = |site| Genotype { programme: start.programme, founder: site };
+    let founder = |site| Genotype::of_founder(start.programme, site);
     let mut population = Population::founded(&settings, start.tick_h, generator(seed), founder);
     while population.clock().generation < 200.0 {
         population.tick();

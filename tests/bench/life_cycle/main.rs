@@ -169,7 +169,7 @@ impl Case {
 
     fn run_ecs(&self, replicate: u64) -> (Cost, End) {
         let rng = generator(replicate_seed(1, 0, replicate));
-        let founder = |site| Genotype { programme: self.start.programme, founder: site };
+        let founder = |site| Genotype::of_founder(self.start.programme, site);
         let mut world = Population::founded(&self.settings, self.start.tick_h, rng, founder);
         let (founders, began) = (world.ledger().cell_lives, Stopwatch::start());
         while world.clock().generation < self.generations as f64 && world.alive() > 0 {
@@ -182,7 +182,7 @@ impl Case {
 
     fn run_flat(&self, replicate: u64) -> (Cost, End) {
         let rng = generator(replicate_seed(1, 0, replicate));
-        let founder = |site| Genotype { programme: self.start.programme, founder: site };
+        let founder = |site| Genotype::of_founder(self.start.programme, site);
         let mut flat = FlatLoop::founded(&self.settings, self.start.tick_h, rng, founder);
         let (founders, began) = (flat.ledger.cell_lives, Stopwatch::start());
         while flat.generation < self.generations as f64 && flat.alive() > 0 {

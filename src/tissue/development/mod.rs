@@ -1,12 +1,40 @@
 //! Development: one body's growth from propagule to adult, as the fields allow it.
+//!
+//! These are the rules; times are exact but for the fields, which follow the body in small steps.
+//!
+//! 1. A cell saves `income_share e0 income_i - upkeep` per hour, its reserve staying between 0 and what
+//!    its next division costs, `division_cost (1 + cv N(0,1))`, at least a hundredth of the mean. It
+//!    divides when it has that much; mother and daughter then start with nothing and a new cost each.
+//!    Divisions at equal times happen in random order.
+//! 2. A cell without room for a daughter (see [`Plan`]) keeps its reserve and divides as soon as a
+//!    death makes room.
+//! 3. Fields are steady: incomes are solved anew before time goes on, once the body has gained a
+//!    sixteenth of its cells by division since the last time (in bodies of up to 16 cells: after every
+//!    division), and after every death. Concentrations belong to sites; until the next
+//!    solution cells keep their incomes, and a daughter has its mother's.
+//! 4. A cell is hungry while its income is below its upkeep, and dies when it has been so for
+//!    `starvation_h` without a break. Its site is free again. Cells whose time is over together die
+//!    together.
+//! 5. A body that holds `adult_cells` living cells has grown up: divisions end for good. A `shell` takes
+//!    its shape. The body waits until no cell is hungry any more, those dying whose time is over; then
+//!    it is adult, perhaps with fewer cells. If cells never die of hunger (`starvation_h` infinite), it
+//!    is adult at once.
+//! 6. A body that can grow no more is stunted: nobody can ever divide, nor die and so make room; or as
+//!    many cells have starved since its size last reached a new maximum as it held then; or nobody is
+//!    left. Every development ends, since births between two maxima are as limited as deaths.
+//!
+//! Without fields all incomes are 1, nothing is solved, and divisions of cells with equal costs fall
+//! into rounds as they do in [`Growth`](super::Growth).
+
+mod cells;
+mod course;
 
 use rand::Rng;
 
 use super::fields::Fields;
 use super::graph::BodyGraph;
-use super::growth::{Growth, Pace};
 use super::plan::Plan;
-use super::steady::SteadySolver;
+use course::Course;
 
 /// All that decides how a body grows.
 #[derive(Debug, Clone, PartialEq)]
@@ -15,7 +43,7 @@ pub struct GrowthRules {
     pub plan: Plan,
     /// Cells of a propagule, at least 1.
     pub propagule_cells: usize,
-    /// Births that make a body adult, founders counted (n).
+    /// Living cells at which a body has grown up (n).
     pub adult_cells: usize,
     /// What decides cells' incomes.
     pub fields: Fields,
@@ -46,8 +74,9 @@ pub enum Ending {
 pub struct Development {
     /// How it ended.
     pub ending: Ending,
-    /// Lattice coordinates of each cell (units of `d / sqrt(2)`) relative to the body's centre.
-    pub coordinates: Vec<[i16; 3]>,
+    /// Lattice coordinates of each cell (units of `d / sqrt(2)`) relative to the body's centre. A
+    /// chain of 100,000 cells does not fit into 16 bits.
+    pub coordinates: Vec<[i32; 3]>,
     /// What its last division made each cell: -1 mother, +1 daughter, 0 never divided.
     pub labels: Vec<i8>,
     /// What each cell has saved, eu.
@@ -74,52 +103,23 @@ impl Development {
 /// Grows bodies by the same rules, in the same working memory.
 #[derive(Debug, Clone)]
 pub struct Developer {
-    rules: GrowthRules,
-    growth: Growth,
-    solver: SteadySolver,
+    course: Course,
 }
 
 impl Developer {
     /// A developer of bodies that grow by `rules`.
     #[must_use]
     pub fn new(rules: GrowthRules) -> Self {
-        let growth = Growth::of_clump(rules.propagule_cells, rules.adult_cells);
-        Self { rules, growth, solver: SteadySolver::default() }
+        Self { course: Course::under(rules) }
     }
 
     /// Grows a body whose cells' incomes are `income_share` of what the fields give (1: untaxed).
+    ///
+    /// At a share that is not a number nothing grows.
     pub fn develop(&mut self, income_share: f64, rng: &mut impl Rng) -> Development {
-        let rules = &self.rules;
-        let pace = Pace {
-            net_income_eu_per_h: income_share * rules.income_eu_per_h - rules.upkeep_eu_per_h,
-            division_cost_eu: rules.division_cost_eu,
-            division_cv: rules.division_cv,
-        };
-        let body = self.growth.grow(&pace, f64::INFINITY, rng);
-        let (places, labels) = (body.places.to_vec(), body.labels.to_vec());
-        let (reserves_eu, duration_h) = (body.reserves_eu.to_vec(), body.duration_h);
-        let lattice = self.growth.lattice();
-        let mut graph = BodyGraph::with_capacity(places.len());
-        for place in &places {
-            let touching: Vec<u32> = lattice
-                .neighbours(*place)
-                .filter_map(|next| places.iter().position(|p| *p == next).map(|i| i as u32))
-                .collect();
-            let empty = 12 - touching.len() as u8;
-            graph.push(touching, empty, empty);
-        }
-        let mut incomes = vec![1.0; places.len()];
-        let (mut u, mut w) = (incomes.clone(), incomes.clone());
-        self.solver.incomes(&graph, &rules.fields, [&mut u, &mut w], &mut incomes);
-        Development {
-            ending: Ending::Adult(duration_h),
-            coordinates: places.iter().map(|p| lattice.coordinates(*p).map(i16::from)).collect(),
-            births_h: vec![0.0; places.len()],
-            labels,
-            reserves_eu,
-            incomes,
-            graph,
-            starved: 0,
-        }
+        self.course.run(income_share, rng)
     }
 }
+
+#[cfg(test)]
+mod tests;
