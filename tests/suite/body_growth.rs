@@ -208,5 +208,10 @@ fn the_same_seed_gives_the_same_body() {
             cut(&body)
         })
         .collect();
-    insta::assert_snapshot!(bodies.join("\n"), @"");
+    insta::assert_snapshot!(bodies.join("\n"), @r"
+    -1414 | -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 | 51.8142 | 0
+    4492 | -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 | 55.1744 | 0
+    3584 | -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 | 55.2599 | 0
+    616 | -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 -1 | 51.8142 | 0
+    ");
 }
