@@ -186,7 +186,11 @@ fn each_warning_of_space_at_its_limit() {
             vec!["body.plan=shell", small, exposure],
             vec!["body.plan=tree", small, exposure],
         ),
-        ("no-interior-cell", vec!["body.plan=chain", small, exposure], vec!["body.plan=chain"]),
+        (
+            "no-interior-cell",
+            vec!["body.plan=chain", small, exposure],
+            vec!["body.plan=chain", small],
+        ),
         (
             "cue-cannot-vary",
             vec!["body.plan=shell", small, exposure],
@@ -220,19 +224,19 @@ fn each_warning_of_space_at_its_limit() {
         // erf(0.5 / (0.309 sqrt 2))^2 = 0.8.
         (
             "torus-kernel",
-            vec![torus, "habitat.dispersal_sites=8"],
-            vec![torus, "habitat.dispersal_sites=7.99"],
+            vec![torus, small, "habitat.dispersal_sites=8"],
+            vec![torus, small, "habitat.dispersal_sites=7.99"],
         ),
         (
             "torus-kernel",
-            vec![torus, "habitat.dispersal_sites=0.308"],
-            vec![torus, "habitat.dispersal_sites=0.310"],
+            vec![torus, small, "habitat.dispersal_sites=0.308"],
+            vec![torus, small, "habitat.dispersal_sites=0.310"],
         ),
         // Replacements cost 8 tau per cell and hour; a cell at soma share 1/2 keeps half an eu.
         (
             "turnover-too-costly",
-            vec!["traits.baseline=0", "budget.turnover_per_h=0.0626"],
-            vec!["traits.baseline=0", "budget.turnover_per_h=0.0624"],
+            vec!["traits.baseline=0", small, "budget.turnover_per_h=0.0626"],
+            vec!["traits.baseline=0", small, "budget.turnover_per_h=0.0624"],
         ),
     ];
     for (name, given, not_given) in cases {
