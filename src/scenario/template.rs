@@ -37,6 +37,9 @@ pub const TEMPLATES: &[Template] = &[
     config!("asymmetric-division", "fates by lineage against fates by chance in a small body"),
     config!("surface-work", "work that pays only at the surface, though returns diminish"),
     config!("valley", "unequal exponents: stable generalists, better specialists out of reach"),
+    config!("help-within-reach", "help that reaches the next cell: sisters side by side or chance"),
+    config!("starved-core", "food that does not reach the core: fates by hunger"),
+    config!("kin-next-door", "propagules that land next door: kin compete for sites"),
 ];
 
 impl Template {

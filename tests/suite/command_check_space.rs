@@ -38,7 +38,7 @@ fn exactly_the_fields_of_the_contract() {
     assert!(number(&waste, "/transport/income_lost_share") > 0.0);
 }
 
-/// Oxygen in air-saturated fresh water at 25 C: C0 = 0.258249 mol/m^3 (8.263457 mg/L, the table of
+/// Oxygen in air-saturated fresh water at 25 C: C0 = 0.258 mol/m^3 (8.26 mg/L, the table of
 /// EN 25814) and D = 2.10e-9 m^2/s (Cussler, Diffusion). Uptake q in mol/(m^3 s) and the diameter in
 /// mm, `2 sqrt(6 D C0 / q)` (Hill 1928, Proc. R. Soc. B 104:39), worked out in double precision by a
 /// program of its own. Handbook values of D span 2.00 to 2.42e-9 m^2/s, 20 %, hence 10 % of a
@@ -59,7 +59,7 @@ fn the_critical_diameter_of_the_handbook() {
             let uptake = q * 1e-3 * 3600.0 * site_um3(diameter_um);
             let uptake = format!("nutrient.uptake_fmol_per_h={uptake}");
             let document = check(&[
-                "nutrient.bath_mM=0.258249",
+                "nutrient.bath_mM=0.258",
                 "nutrient.diffusivity_um2_per_s=2100",
                 &uptake,
                 &format!("body.cell_diameter_um={size}"),
@@ -76,7 +76,7 @@ fn the_critical_diameter_of_the_handbook() {
 fn the_critical_diameter_is_told_in_words() {
     let uptake = 0.013 * 1e-3 * 3600.0 * site_um3(10.0);
     let text = format!(
-        "title = \"Oxygen\"\n[body]\nadult_cells = 64\n[nutrient]\nbath_mM = 0.258249\n\
+        "title = \"Oxygen\"\n[body]\nadult_cells = 64\n[nutrient]\nbath_mM = 0.258\n\
          diffusivity_um2_per_s = 2100\nuptake_fmol_per_h = {uptake}"
     );
     let ran = Desk::with(text).run(&["check", "pond.toml"]);
@@ -172,6 +172,7 @@ fn bodies_starve_beyond_the_largest_fed_one() {
 fn each_warning_of_space_at_its_limit() {
     let exposure = "traits.cues=[\"exposure\"]";
     let income = "traits.cues=[\"income\"]";
+    let noise = "traits.cues=[\"noise\"]";
     let small = "body.adult_cells=64";
     let torus = "habitat.layout=torus";
     let hungry = |setting: &'static str| [&HUNGRY[..], &[small, setting]].concat();
@@ -186,7 +187,11 @@ fn each_warning_of_space_at_its_limit() {
             vec!["body.plan=shell", small, exposure],
             vec!["body.plan=tree", small, exposure],
         ),
-        ("no-interior-cell", vec!["body.plan=chain", small, exposure], vec!["body.plan=chain"]),
+        (
+            "no-interior-cell",
+            vec!["body.plan=chain", small, exposure],
+            vec!["body.plan=chain", small],
+        ),
         (
             "cue-cannot-vary",
             vec!["body.plan=shell", small, exposure],
@@ -199,11 +204,7 @@ fn each_warning_of_space_at_its_limit() {
             vec!["body.plan=chain", "body.adult_cells=2", income, NUTRIENT],
             vec!["body.plan=chain", "body.adult_cells=3", income, NUTRIENT],
         ),
-        (
-            "cue-cannot-vary",
-            vec!["body.adult_cells=1", "traits.cues=[\"noise\"]"],
-            vec!["body.adult_cells=2", "traits.cues=[\"noise\"]"],
-        ),
+        ("cue-cannot-vary", vec!["body.adult_cells=1", noise], vec!["body.adult_cells=2", noise]),
         ("never-matures", hungry("nutrient.exchange=0.1"), hungry("nutrient.exchange=1")),
         // Radius of 64 sites: 2.2106 diameters, a quarter of it 0.5527.
         (
@@ -220,19 +221,19 @@ fn each_warning_of_space_at_its_limit() {
         // erf(0.5 / (0.309 sqrt 2))^2 = 0.8.
         (
             "torus-kernel",
-            vec![torus, "habitat.dispersal_sites=8"],
-            vec![torus, "habitat.dispersal_sites=7.99"],
+            vec![torus, small, "habitat.dispersal_sites=8"],
+            vec![torus, small, "habitat.dispersal_sites=7.99"],
         ),
         (
             "torus-kernel",
-            vec![torus, "habitat.dispersal_sites=0.308"],
-            vec![torus, "habitat.dispersal_sites=0.310"],
+            vec![torus, small, "habitat.dispersal_sites=0.308"],
+            vec![torus, small, "habitat.dispersal_sites=0.310"],
         ),
         // Replacements cost 8 tau per cell and hour; a cell at soma share 1/2 keeps half an eu.
         (
             "turnover-too-costly",
-            vec!["traits.baseline=0", "budget.turnover_per_h=0.0626"],
-            vec!["traits.baseline=0", "budget.turnover_per_h=0.0624"],
+            vec!["traits.baseline=0", small, "budget.turnover_per_h=0.0626"],
+            vec!["traits.baseline=0", small, "budget.turnover_per_h=0.0624"],
         ),
     ];
     for (name, given, not_given) in cases {
@@ -244,7 +245,7 @@ fn each_warning_of_space_at_its_limit() {
 
 #[test]
 fn nothing_is_said_where_space_does_no_harm() {
-    // Cells of 100 um that eat little, help that reaches 0.36 of the body's radius, a few
+    // Returns that diminish, cells of 100 um that eat little, help that reaches 0.36 of the body's radius, a few
     // replacements in a life, and kin nearby: there is nothing to warn of.
     let calm = [
         NUTRIENT,
@@ -252,7 +253,9 @@ fn nothing_is_said_where_space_does_no_harm() {
         "support.range_diameters=2",
         "budget.turnover_per_h=0.0001",
         "habitat.layout=torus",
-        "traits.cues=[\"lineage\", \"exposure\", \"income\"]",
+        "traits.cues=[\"noise\"]",
+        "returns.viability.exponent=0.8",
+        "returns.fecundity.exponent=0.8",
     ];
     assert_eq!(warnings(&calm), [""; 0]);
 }

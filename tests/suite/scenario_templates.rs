@@ -1,4 +1,4 @@
-//! Templates and the six scenarios of `configs`: complete, commented, without faults.
+//! Templates and the nine scenarios of `configs`: complete, commented, without faults.
 
 use somadawn::scenario::Settings;
 use somadawn::scenario::registry::{entries, tables};

@@ -108,8 +108,8 @@ impl Bodies {
 
 fn interior_share(body: &Development) -> f64 {
     let empty = body.graph.empty();
-    let interior = empty.iter().filter(|count| **count == 0).count();
-    interior as f64 / empty.len().max(1) as f64
+    let interior: f64 = empty.iter().map(|sites| f64::from(u8::from(*sites == 0))).sum();
+    interior / empty.len().max(1) as f64
 }
 
 fn mean_income(body: &Development) -> f64 {
