@@ -190,6 +190,14 @@ impl PropaguleStock {
         whole(self.at(to_h)).wrapping_sub(whole(self.at(from_h)))
     }
 
+    /// What the stock holds at `hour` beyond whole propagules, between -1/2 and 1/2: the stock of one
+    /// that goes on from there.
+    #[must_use]
+    pub fn left_over(&self, hour: f64) -> f64 {
+        let level = self.at(hour);
+        level - level.round_ties_even()
+    }
+
     /// The stock at `hour` of all that life has put into it, in propagules.
     #[inline]
     const fn at(&self, hour: f64) -> f64 {

@@ -10,8 +10,8 @@ use super::components::{
 use super::mechanisms::only_table;
 use super::nursery::{Nursery, SharedBodies, SharedBody};
 use super::resources::{
-    Calendar, Clock, GenePool, Genotype, Ledger, Maturing, Random, Released, Rules, Settler,
-    Settlers, Vacancies,
+    Calendar, Clock, EarlierReleases, GenePool, Genotype, Ledger, Maturing, Random, Released,
+    Rules, Settler, Settlers, Vacancies,
 };
 use super::schedule::{founding_schedule, tick_schedule};
 use crate::scenario::Settings;
@@ -122,6 +122,7 @@ impl Population {
         world.init_resource::<Calendar>();
         world.init_resource::<Maturing>();
         world.init_resource::<Vacancies>();
+        world.init_resource::<EarlierReleases>();
         world.init_resource::<Ledger>();
         founding_schedule().run(&mut world);
         world.resource_mut::<Clock>().generation = 0.0;

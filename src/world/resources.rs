@@ -87,6 +87,7 @@ impl PartialOrd for Event {
 pub struct Calendar {
     adulthoods: BinaryHeap<Reverse<Event>>,
     deaths: BinaryHeap<Reverse<Event>>,
+    replacements: BinaryHeap<Reverse<Event>>,
 }
 
 impl Calendar {
@@ -100,14 +101,17 @@ impl Calendar {
         self.deaths.push(Reverse(event));
     }
 
+    /// Notes that a cell of the colony of `event.site` will be replaced then.
+    pub fn expect_replacement(&mut self, event: Event) {
+        self.replacements.push(Reverse(event));
+    }
+
     /// When the next event is due, h; none when nobody is alive.
     #[must_use]
     pub fn next_event_h(&self) -> Option<f64> {
         let first = |queue: &BinaryHeap<Reverse<Event>>| queue.peek().map(|next| next.0.at_h);
-        match (first(&self.adulthoods), first(&self.deaths)) {
-            (Some(adulthood_h), Some(death_h)) => Some(adulthood_h.min(death_h)),
-            (adulthood_h, death_h) => adulthood_h.or(death_h),
-        }
+        let all = [&self.adulthoods, &self.deaths, &self.replacements];
+        all.into_iter().filter_map(first).reduce(f64::min)
     }
 
     /// The next colony to be adult by `now_h`.
@@ -118,6 +122,11 @@ impl Calendar {
     /// The next colony to be dead by `now_h`.
     pub fn next_death(&mut self, now_h: f64) -> Option<Event> {
         pop_due(&mut self.deaths, now_h)
+    }
+
+    /// The next colony with a cell to be replaced by `now_h`.
+    pub fn next_replacement(&mut self, now_h: f64) -> Option<Event> {
+        pop_due(&mut self.replacements, now_h)
     }
 }
 
@@ -169,6 +178,16 @@ pub struct Released {
     pub total: u64,
 }
 
+/// Propagules that adults released before the last change of their stock's growth; none where cells
+/// are not replaced.
+#[derive(Resource, Debug, Clone, Default)]
+pub struct EarlierReleases {
+    /// Since the colony's adulthood, by site.
+    pub of_life: Vec<u64>,
+    /// In this tick: sites and numbers, a site as often as its stock changed.
+    pub of_tick: Vec<(u32, u64)>,
+}
+
 /// A propagule that has found an empty site.
 #[derive(Debug, Clone, Copy)]
 pub struct Settler {
@@ -191,6 +210,8 @@ pub struct Ledger {
     pub settlements: u64,
     /// Colonies that died.
     pub deaths: u64,
+    /// Cells of adults that were replaced.
+    pub replacements: u64,
     /// Colonies that have stopped growing short of adult size, counted when they settle.
     pub never_matured: u64,
     /// Propagules released over their whole life by colonies that died.

@@ -1,6 +1,9 @@
 //! Checks of the library and the program against values from outside, one file per subject.
 
+mod body_growth;
+mod body_hunger;
 mod command_check;
+mod command_check_space;
 mod command_evolve;
 mod command_evolve_extremes;
 mod command_evolve_refusals;
@@ -36,6 +39,8 @@ mod simulation_reproducible;
 mod simulation_space;
 mod simulation_support;
 mod simulation_thresholds;
+mod simulation_torus;
+mod simulation_torus_relatedness;
 mod stats_binomial;
 mod stats_division_of_labour;
 mod stats_mean;

@@ -29,7 +29,7 @@ fn scenario() -> Settings {
     settings
 }
 
-fn records(settings: &Settings, threads: usize) -> Vec<ReplicateRecord> {
+pub(crate) fn records(settings: &Settings, threads: usize) -> Vec<ReplicateRecord> {
     let numbers: Vec<u32> = (0..settings.run.replicates).collect();
     let stop = AtomicBool::new(false);
     let mut records = Vec::new();

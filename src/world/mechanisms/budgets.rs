@@ -52,17 +52,28 @@ pub fn split_budgets(
         let rows = counts[here].rows(here, capacity);
         // Cells that starved on the way have left rows behind.
         outputs[rows.end..(here + 1) * capacity].fill(Output::default());
-        let cells = draws[rows.clone()].iter().zip(&labels[rows.clone()]);
-        let cells = cells.zip(&exposed[rows.clone()]);
-        readings.clear();
-        readings.extend(cells.map(|((draw, label), surface)| heeded.code(*draw, *label, *surface)));
+        let cells = Cells {
+            labels: &labels[rows.clone()],
+            exposed: &exposed[rows.clone()],
+            draws: &draws[rows.clone()],
+            shares: &mut shares[rows.clone()],
+            budgets: &mut budgets[rows.clone()],
+            outputs: &mut outputs[rows],
+        };
         let programme = &pool.0[here].programme;
         let colony = Colony { rules: &rules, programme, means: &means[here] };
-        let targets = shares[rows.clone()].iter_mut().zip(&mut budgets[rows.clone()]);
-        let targets = targets.zip(&mut outputs[rows]);
-        let targets = targets.map(|((share, budget), output)| (share, budget, output));
-        colony.settle(&readings, bodies.of(here), targets);
+        colony.split(&heeded, bodies.of(here), cells, &mut readings);
     }
+}
+
+/// The cells of one colony: what they read, and what they do.
+pub(super) struct Cells<'c> {
+    pub(super) labels: &'c [DivisionLabel],
+    pub(super) exposed: &'c [Exposed],
+    pub(super) draws: &'c [NoiseDraw],
+    pub(super) shares: &'c mut [SomaShare],
+    pub(super) budgets: &'c mut [Budget],
+    pub(super) outputs: &'c mut [Output],
 }
 
 /// Room for all codes of readings: two bits of noise, two of the label, one of exposure.
@@ -72,13 +83,13 @@ const CODES: usize = 32;
 ///
 /// A reading is coded in five bits: noise draw + 1, label + 1, exposure; what makes no difference
 /// reads as if it were 0, not divided or interior.
-struct Heeded {
+pub(super) struct Heeded {
     label_mask: u8,
     exposure_mask: u8,
 }
 
 impl Heeded {
-    fn by(rules: &Rules) -> Self {
+    pub(super) fn by(rules: &Rules) -> Self {
         let lineage = rules.0.traits.cues.contains(Cue::Lineage);
         let mask = |heeded: bool| if heeded { u8::MAX } else { 0 };
         Self { label_mask: mask(lineage), exposure_mask: mask(rules.0.exposure_matters()) }
@@ -93,13 +104,29 @@ impl Heeded {
 }
 
 /// What the fates of one colony's cells depend on together.
-struct Colony<'a> {
-    rules: &'a Rules,
-    programme: &'a Programme,
-    means: &'a CueMeans,
+pub(super) struct Colony<'a> {
+    pub(super) rules: &'a Rules,
+    pub(super) programme: &'a Programme,
+    pub(super) means: &'a CueMeans,
 }
 
 impl Colony<'_> {
+    /// Sets what each cell does by what it reads; `readings` is working memory.
+    pub(super) fn split(
+        &self,
+        heeded: &Heeded,
+        body: Option<&SharedBody>,
+        cells: Cells<'_>,
+        readings: &mut Vec<u8>,
+    ) {
+        let read = cells.draws.iter().zip(cells.labels).zip(cells.exposed);
+        readings.clear();
+        readings.extend(read.map(|((draw, label), surface)| heeded.code(*draw, *label, *surface)));
+        let targets = cells.shares.iter_mut().zip(cells.budgets).zip(cells.outputs);
+        let targets = targets.map(|((share, budget), output)| (share, budget, output));
+        self.settle(readings, body, targets);
+    }
+
     /// Writes the fates of cells with these readings in a body, shared or of their own.
     fn settle<'w>(
         &self,

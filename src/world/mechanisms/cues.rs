@@ -36,8 +36,7 @@ pub fn read_cues(
             mean.noise = 2.0 * p - 1.0;
         }
         if cues.contains(Cue::Lineage) {
-            let sum: i64 = labels[rows.clone()].iter().map(|label| i64::from(label.0)).sum();
-            mean.lineage = sum as f64 / n as f64;
+            mean.lineage = mean_label(&labels[rows.clone()]);
         }
         if cues.contains(Cue::Exposure) {
             let count = exposed[rows].iter().filter(|cell| cell.0).count();
@@ -46,8 +45,14 @@ pub fn read_cues(
     }
 }
 
+/// Mean division label of a body.
+pub(super) fn mean_label(labels: &[DivisionLabel]) -> f64 {
+    let sum: i64 = labels.iter().map(|label| i64::from(label.0)).sum();
+    sum as f64 / labels.len() as f64
+}
+
 /// +1 with probability `p` to a resolution of 2^-32, else -1, independently for each cell.
-fn draw_noise(draws: &mut [NoiseDraw], p: f64, rng: &mut impl Rng) {
+pub(super) fn draw_noise(draws: &mut [NoiseDraw], p: f64, rng: &mut impl Rng) {
     #[expect(clippy::cast_sign_loss, reason = "a probability is at least 0")]
     let threshold = (p * 4_294_967_296.0) as u64;
     let sign = |bits: u64| NoiseDraw(if bits < threshold { 1 } else { -1 });

@@ -15,6 +15,7 @@ mod plots;
 pub mod reproduction;
 pub mod settlement;
 pub mod support;
+pub mod turnover;
 pub(super) mod yields;
 
 use bevy_ecs::query::QueryNotDenseError;

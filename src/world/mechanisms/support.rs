@@ -3,7 +3,7 @@
 use bevy_ecs::prelude::*;
 
 use super::only_table;
-use crate::tissue::SteadySolver;
+use crate::tissue::{BodyGraph, Sharing, SteadySolver};
 use crate::world::components::{CellCount, Output, Support, Vitals};
 use crate::world::nursery::SharedBodies;
 use crate::world::resources::{Maturing, Rules};
@@ -25,18 +25,28 @@ pub fn pool_support(
     for &site in &maturing.0 {
         let here = site as usize;
         let body = &outputs[counts[here].rows(here, rules.0.body.adult_cells)];
-        let [viability, fecundity] = summed(body);
-        vitals[here].viability = viability / body.len() as f64;
-        vitals[here].fecundity = fecundity;
+        [vitals[here].viability, vitals[here].fecundity] = pooled(body);
     }
 }
 
+/// Viability and fecundity of a body whose support is pooled.
+pub(super) fn pooled(body: &[Output]) -> [f64; 2] {
+    let [viability, fecundity] = summed(body);
+    [viability / body.len() as f64, fecundity]
+}
+
 /// Working memory of local support.
-#[derive(Debug, Default)]
+#[derive(Debug)]
 pub struct Spreading {
     solver: SteadySolver,
     output: Vec<f64>,
     support: Vec<f64>,
+}
+
+impl Default for Spreading {
+    fn default() -> Self {
+        Self { solver: SteadySolver::working(), output: Vec::new(), support: Vec::new() }
+    }
 }
 
 /// Spreads support by local transport over each colony that becomes adult, `V = n / sum_i (1/S_i)`
@@ -57,20 +67,35 @@ pub fn spread_support(
     let received = received.bypass_change_detection();
     let (counts, mut vitals) = only_table(colonies.contiguous_iter_mut());
     let vitals = vitals.bypass_change_detection();
-    let Spreading { solver, output, support } = &mut *memory;
     for &site in &maturing.0 {
         let here = site as usize;
         let Some(body) = bodies.of(here) else { continue };
         let rows = counts[here].rows(here, rules.0.body.adult_cells);
+        let graph = &body.development.graph;
+        let body = &outputs[rows.clone()];
+        [vitals[here].viability, vitals[here].fecundity] =
+            memory.spread(graph, &sharing, body, &mut received[rows]);
+    }
+}
+
+impl Spreading {
+    /// Sets the support that each cell receives; viability and fecundity of the body.
+    pub(super) fn spread(
+        &mut self,
+        graph: &BodyGraph,
+        sharing: &Sharing,
+        body: &[Output],
+        received: &mut [Support],
+    ) -> [f64; 2] {
+        let Self { solver, output, support } = self;
         output.clear();
-        output.extend(outputs[rows.clone()].iter().map(|cell| f64::from(cell.viability)));
+        output.extend(body.iter().map(|cell| f64::from(cell.viability)));
         support.resize(output.len(), 0.0);
-        solver.support(&body.development.graph, &sharing, output, support);
-        for (cell, support) in received[rows.clone()].iter_mut().zip(&*support) {
+        solver.support(graph, sharing, output, support);
+        for (cell, support) in received.iter_mut().zip(&*support) {
             *cell = Support(*support as f32);
         }
-        vitals[here].viability = crate::tissue::fields::viability(support);
-        vitals[here].fecundity = summed(&outputs[rows])[1];
+        [crate::tissue::fields::viability(support), summed(body)[1]]
     }
 }
 

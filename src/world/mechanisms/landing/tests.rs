@@ -103,7 +103,7 @@ fn outcomes(
 fn first_comers_are_those_of_propagules_landed_one_by_one() {
     const TRIALS: u32 = 60_000;
     let mut rng = Xoshiro256PlusPlus::seed_from_u64(31);
-    for (side, sd, crowd) in [(3, 0.4, 1), (4, 0.7, 1), (4, 1.5, 1), (3, 0.7, 40)] {
+    for (side, sd, crowd) in [(3, 0.4, 1), (4, 0.7, 1), (4, 1.5, 1), (3, 0.7, 12)] {
         let sites = side * side;
         let mut released = torus(side);
         released.by_site.iter_mut().for_each(|count| *count *= crowd);
