@@ -53,6 +53,7 @@ mod theory_selection;
 mod theory_space;
 mod theory_space_fates;
 mod theory_space_models;
+mod theory_space_scenarios;
 mod world_lattice;
 mod world_random;
 mod world_schedule;
