@@ -83,6 +83,9 @@ fn transport_rows(transport: &TransportOutlook) -> Vec<(&'static str, String)> {
 }
 
 fn hours(h: f64) -> String {
+    if h.is_infinite() {
+        return "never".to_owned();
+    }
     format!("{} h ({} days)", short(h), short(h / 24.0))
 }
 

@@ -7,7 +7,9 @@ use clap::Args;
 use super::output::{print, print_json};
 use super::{Common, Failure, ScenarioFile};
 use crate::scenario::{Override, Settings, nearest};
-use crate::study::prediction::{CriticalQuery, Prediction, predict, predict_with_critical};
+use crate::study::prediction::{
+    CriticalQuery, Prediction, SamplingPart, predict, predict_with_critical,
+};
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -134,6 +136,9 @@ fn rows(prediction: &Prediction) -> Vec<(String, String)> {
     for (name, value) in &best.traits {
         rows.push((format!("best {name}"), format!("{value:.3}")));
     }
+    if let Some(sampling) = &prediction.sampling {
+        rows.push(row("the numbers rest on", basis(sampling)));
+    }
     if let Some(critical) = &prediction.critical {
         let (local, global) = (place(critical.local), place(critical.global));
         rows.push(row("critical value of", critical.keys.join(", ")));
@@ -143,6 +148,17 @@ fn rows(prediction: &Prediction) -> Vec<(String, String)> {
         ]);
     }
     rows
+}
+
+/// How many bodies and fates the numbers come from, and what that leaves uncertain.
+fn basis(sampling: &SamplingPart) -> String {
+    let SamplingPart { bodies, maturing_share, fates, gain_error } = *sampling;
+    let fates = fates.map_or_else(String::new, |fates| format!(", {fates} random fates each"));
+    let matured = format!("{:.0} % of which matured", 100.0 * maturing_share);
+    let error = gain_error.map_or_else(String::new, |error| {
+        format!("; standard error of the gain {:.2} %", 100.0 * error)
+    });
+    format!("{bodies} bodies grown, {matured}{fates}{error}")
 }
 
 fn place(value: Option<f64>) -> String {

@@ -18,6 +18,7 @@ use crate::theory::best::BETTER;
 use crate::theory::body::joined;
 use crate::theory::critical::{global_critical, local_critical};
 use crate::theory::lineage::label_compositions;
+use crate::theory::placed::Sample;
 use crate::theory::reaction_norm::NOISE_BIAS_BOUND;
 use crate::theory::{
     BestProgramme, BodyClass, CellKind, Composition, Compositions, Cue, CueSelection, Generalist,
@@ -40,6 +41,22 @@ pub struct Prediction {
     pub verdict: Verdict,
     /// Where verdicts change, if that was asked for.
     pub critical: Option<CriticalPart>,
+    /// What the numbers rest on, where bodies are known cell by cell.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub sampling: Option<SamplingPart>,
+}
+
+/// What numbers about bodies that are known cell by cell rest on.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct SamplingPart {
+    /// Bodies grown.
+    pub bodies: usize,
+    /// Share of them that matured.
+    pub maturing_share: f64,
+    /// Random fates drawn per body; null where all were summed, or their mean is known in closed form.
+    pub fates: Option<usize>,
+    /// Standard error of the best programme's gain in ln R0, from bodies and fates.
+    pub gain_error: Option<f64>,
 }
 
 /// The generalist optimum.
@@ -116,6 +133,7 @@ pub fn predict(settings: &Settings) -> Prediction {
         best: best_part(&best, settings),
         verdict: Model::verdict(&selection, better_elsewhere),
         critical: None,
+        sampling: model.placed().map(|bodies| sampling_part(&bodies.sample(), &best)),
     }
 }
 
@@ -246,6 +264,15 @@ fn best_part(best: &BestProgramme, settings: &Settings) -> BestPart {
         division_index: best.outcome.division_index,
         soma_fraction: best.outcome.soma_fraction,
         class: best.outcome.class,
+    }
+}
+
+fn sampling_part(sample: &Sample, best: &BestProgramme) -> SamplingPart {
+    SamplingPart {
+        bodies: sample.bodies,
+        maturing_share: sample.maturing,
+        fates: if best.gain.draws_fates { sample.fates } else { None },
+        gain_error: finite(best.gain.standard_error),
     }
 }
 

@@ -87,7 +87,7 @@ impl Model {
         } else {
             let r0 = self.expected_propagules(&programme);
             let ln_r0 = libm::log(r0) - libm::log(generalist.r0);
-            (r0, Gain { ln_r0, standard_error: 0.0 })
+            (r0, Gain { ln_r0, standard_error: 0.0, draws_fates: false })
         };
         BestProgramme { programme, r0, outcome, gain }
     }

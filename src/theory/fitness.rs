@@ -287,7 +287,7 @@ impl From<&Programme> for Norm<f64> {
 
 impl<S: Scalar> Norm<S> {
     /// `sum_k |g_k|`.
-    fn total_responsiveness(&self) -> S {
+    pub(super) fn total_responsiveness(&self) -> S {
         self.responsiveness.iter().fold(S::constant(0.0), |sum, g| sum + g.abs())
     }
 

@@ -136,15 +136,13 @@ impl PlacedBodies {
         cues.iter().filter(|cue| reads(*cue)).collect()
     }
 
-    /// Number of bodies that differ, fates of each that a programme with noise is held against at
-    /// the end, and whether these are all the fates there are.
+    /// What numbers about these bodies rest on.
     #[must_use]
     pub fn sample(&self) -> Sample {
         let cells = self.sited.iter().map(|sited| sited.body.cells()).max().unwrap_or(0);
-        let mature = self.mean_of_mature(|_| 1.0).is_some();
         let maturing = self.sited.iter().filter(|sited| sited.body.growth_h.is_some());
         let maturing: f64 = maturing.map(|sited| sited.weight).sum();
-        let fates = if mature { Luck::fates_judged(cells) } else { None };
+        let fates = Luck::fates_judged(cells);
         #[expect(clippy::cast_sign_loss, reason = "a number of bodies")]
         Sample { bodies: self.drawn.round() as usize, maturing, fates }
     }
@@ -157,7 +155,7 @@ pub struct Sample {
     pub bodies: usize,
     /// Share of them that matured.
     pub maturing: f64,
-    /// Fates drawn per body for the last word on random fates; none where all were summed.
+    /// Fates drawn per body for the last word on a programme with noise; none where all are summed.
     pub fates: Option<usize>,
 }
 

@@ -14,6 +14,10 @@ use somadawn::tissue::{Nutrient, Sharing, SteadySolver};
 
 use crate::field_fixture::{body_on, chain};
 
+fn index(cell: i32) -> usize {
+    usize::try_from(cell).expect("a place in the chain")
+}
+
 /// The root below 1 of `rho + 1/rho = sum`.
 fn decay(sum: f64) -> f64 {
     // The larger root is found without cancellation, and the product of both is 1.
@@ -78,7 +82,7 @@ fn support_of_a_point_source_is_that_of_the_recurrence() {
             for leak in [0.0, 0.002, 0.3] {
                 let sharing = Sharing { range_diameters, leak };
                 let mut output = vec![0.0; graph.cells()];
-                output[source as usize] = 1.0;
+                output[index(source)] = 1.0;
                 let mut support = output.clone();
                 solver.support(&graph, &sharing, &output, &mut support);
                 let exact = support_closed_form(n, source, range_diameters.powi(2) / 2.0, leak);
@@ -106,6 +110,6 @@ fn the_recurrence_holds_in_any_order_of_cells() {
     SteadySolver::default().support(&graph, &sharing, &output, &mut support);
     let exact = support_closed_form(n, 100, 450.0, 0.0);
     for (cell, support) in order.iter().zip(&support) {
-        approx::assert_relative_eq!(*support, exact[*cell as usize], max_relative = 2e-6);
+        approx::assert_relative_eq!(*support, exact[index(*cell)], max_relative = 2e-6);
     }
 }

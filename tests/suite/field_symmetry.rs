@@ -1,6 +1,8 @@
 //! Fields where symmetry or a limit says what they are: equal sites, sealed bodies, no reach and
 //! endless reach, bodies in parts.
 
+#![expect(clippy::float_cmp, reason = "values that must be the very same")]
+
 use std::collections::BTreeMap;
 
 use somadawn::tissue::fields::viability;

@@ -1,6 +1,9 @@
 //! Checks of the library and the program against values from outside, one file per subject.
 
+mod body_growth;
+mod body_hunger;
 mod command_check;
+mod command_check_space;
 mod command_evolve;
 mod command_evolve_extremes;
 mod command_evolve_refusals;
@@ -48,6 +51,9 @@ mod theory_critical;
 mod theory_fitness;
 mod theory_models;
 mod theory_selection;
+mod theory_space;
+mod theory_space_fates;
+mod theory_space_models;
 mod world_lattice;
 mod world_random;
 mod world_schedule;

@@ -75,7 +75,8 @@ impl Scene<'_> {
         }
         let diameter_um = 2.0 * body.radius_um;
         if body.cells < SMALL_BODY_CELLS || diameter_um < SMALL_BODY_UM {
-            warnings.push(Warning::SmallBody { cells: body.cells, diameter_um });
+            let plan = settings.body.plan;
+            warnings.push(Warning::SmallBody { plan, cells: body.cells, diameter_um });
         }
         warnings
     }

@@ -27,9 +27,11 @@ pub enum Warning {
     },
     /// The body is smaller than those that are known to differentiate by position.
     SmallBody {
+        /// How the body is built.
+        plan: Plan,
         /// Cells of an adult body.
         cells: usize,
-        /// Diameter of the body, um.
+        /// Diameter of the body, or length of a chain, um.
         diameter_um: f64,
     },
     /// In adult bodies some cells earn less than their upkeep.
@@ -192,10 +194,11 @@ impl Warning {
             Self::CueCannotVary { cue, because } => {
                 format!("the cue {cue} reads the same in all cells of a body: {}", because.text())
             }
-            Self::SmallBody { cells, diameter_um } => format!(
-                "a body of {cells} cells, {diameter_um:.0} um across, is below the 1000 cells or \
+            Self::SmallBody { plan, cells, diameter_um } => format!(
+                "a body of {cells} cells, {diameter_um:.0} um {}, is below the 1000 cells or \
                  0.5 mm under which patterned differentiation is commonly held not to occur; \
-                 small algae of 64 to 128 cells show it all the same"
+                 small algae of 64 to 128 cells show it all the same",
+                if *plan == Plan::Chain { "long" } else { "across" }
             ),
             Self::BodyStarves { cells, fed } => format!(
                 "bodies of {cells} cells are asked for, but beyond {fed} some cells earn less \

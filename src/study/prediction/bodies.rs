@@ -1,6 +1,6 @@
 //! Bodies told cell by cell: where chance or the fields arrange them, a sample.
 
-use std::sync::Arc;
+use std::sync::{Arc, Mutex};
 
 use rand::SeedableRng;
 use rand_xoshiro::Xoshiro256PlusPlus;
@@ -8,7 +8,7 @@ use rand_xoshiro::Xoshiro256PlusPlus;
 use super::reach::Reach;
 use crate::scenario::Settings;
 use crate::theory::{CellKind, Cue, PlacedBodies, PlacedBody, PlacedCell, Spread};
-use crate::tissue::{BodyGraph, Developer, Development, Ending, Sharing};
+use crate::tissue::{BodyGraph, Developer, Development, Ending, Sharing, SteadySolver};
 
 /// Cells grown in all to learn what bodies are like.
 const SAMPLED_CELLS: usize = 2048;
@@ -35,7 +35,9 @@ pub(super) fn placed_bodies(settings: &Settings) -> PlacedBodies {
         }
     }
     let sharing = settings.sharing();
-    let bodies = known.into_iter().map(|(number, arranged)| (number, arranged.placed(sharing)));
+    let solver = Arc::new(Mutex::new(SteadySolver::default()));
+    let placed = |(number, body): (f64, Arranged)| (number, body.placed(sharing, &solver));
+    let bodies: Vec<(f64, PlacedBody)> = known.into_iter().map(placed).collect();
     PlacedBodies::new(bodies, settings.budget.turnover_per_h)
 }
 
@@ -76,9 +78,9 @@ impl Arranged {
         Self { cells: order.into_iter().map(cell).collect(), growth_h, graph }
     }
 
-    fn placed(self, sharing: Option<Sharing>) -> PlacedBody {
+    fn placed(self, sharing: Option<Sharing>, solver: &Arc<Mutex<SteadySolver>>) -> PlacedBody {
         let spread = self.graph.zip(sharing).map(|(graph, sharing)| {
-            let reach: Arc<dyn Spread> = Arc::new(Reach::new(graph, sharing));
+            let reach: Arc<dyn Spread> = Arc::new(Reach::new(graph, sharing, Arc::clone(solver)));
             reach
         });
         PlacedBody { cells: self.cells, growth_h: self.growth_h, spread }

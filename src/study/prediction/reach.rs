@@ -1,6 +1,6 @@
 //! What reaches whom in a body: the steady solver as theory's operator of support.
 
-use std::sync::{Mutex, PoisonError};
+use std::sync::{Arc, Mutex, PoisonError};
 
 use crate::theory::Spread;
 use crate::tissue::{BodyGraph, Sharing, SteadySolver};
@@ -17,15 +17,19 @@ const EXACT: f64 = 1e-14;
 pub(super) struct Reach {
     graph: BodyGraph,
     sharing: Sharing,
-    solver: Mutex<SteadySolver>,
+    solver: Arc<Mutex<SteadySolver>>,
     /// Row i: what every cell has of a unit that cell i makes. Empty in large bodies.
     table: Vec<f64>,
 }
 
 impl Reach {
-    pub(super) fn new(graph: BodyGraph, sharing: Sharing) -> Self {
+    /// The operator of the body with that graph; bodies may share a solver's memory.
+    pub(super) fn new(
+        graph: BodyGraph,
+        sharing: Sharing,
+        solver: Arc<Mutex<SteadySolver>>,
+    ) -> Self {
         let cells = graph.cells();
-        let solver = Mutex::new(SteadySolver::default());
         let mut reach = Self { graph, sharing, solver, table: Vec::new() };
         if cells <= TABLED {
             let mut table = vec![0.0; cells * cells];

@@ -38,7 +38,7 @@ struct Whole {
 }
 
 impl Model {
-    /// `sum_i d^2 W / d x_i^2` of `W = B V / (m_ext V + m0)`, x_i being cell i's own logit.
+    /// `sum_i d^2 W / d x_i^2` of `W = B V / (m_ext V + m0)`, `x_i` being cell i's own logit.
     ///
     /// Half of it times the variance of an independent perturbation of all logits is that
     /// perturbation's effect on E[W] to second order. With support `S = M v`, `q_k = S_k^-2` and
@@ -178,4 +178,56 @@ fn column_weights(spread: &dyn Spread, weights: &[f64]) -> Vec<f64> {
 
 fn random_signs(count: usize, rng: &mut impl Rng) -> Vec<f64> {
     (0..count).map(|_| if rng.random::<bool>() { 1.0 } else { -1.0 }).collect()
+}
+
+#[cfg(test)]
+mod tests {
+    use approx::assert_relative_eq;
+
+    use super::*;
+
+    /// A ring of cells with `M_ij = (1 - r) / (1 + r) r^|i - j|`, cut off at 40 cells (r^40 < 1e-12).
+    #[derive(Debug)]
+    struct Ring(f64);
+
+    impl Ring {
+        fn share(&self, steps: usize) -> f64 {
+            let power = (0..steps).fold(1.0, |product, _| product * self.0);
+            (1.0 - self.0) / (1.0 + self.0) * power
+        }
+    }
+
+    impl Spread for Ring {
+        fn spread(&self, output: &[f64], support: &mut [f64]) {
+            let cells = output.len();
+            let shares: Vec<f64> = (0..=40).map(|steps| self.share(steps)).collect();
+            for (cell, support) in support.iter_mut().enumerate() {
+                let both =
+                    |k: usize| output[(cell + k) % cells] + output[(cell + cells - k) % cells];
+                let around: f64 = (1..=40).map(|k| shares[k] * both(k)).sum();
+                *support = shares[0] * output[cell] + around;
+            }
+        }
+
+        fn spread_exactly(&self, output: &[f64], support: &mut [f64]) {
+            self.spread(output, support);
+        }
+    }
+
+    /// `sum_k M_ki^2 = ((1 - r)/(1 + r))^2 (1 + 2 r^2 / (1 - r^2))` for every cell of the ring. From
+    /// probes, the sum over n cells has the relative error `sqrt(2 / 64) |off-diagonal of M^2| / trace`;
+    /// with r = 1/2 that is 0.177 * 1.51 / sqrt(n), here 0.67 % (fixed seed; 4 errors: false alarm 6e-5).
+    #[test]
+    fn probes_agree_with_columns() {
+        let ring = Ring(0.5);
+        let exact = 1.0 / 9.0 * (1.0 + 0.5 / 0.75);
+        let columns = column_weights(&ring, &[1.0; 300]);
+        for weight in columns {
+            assert_relative_eq!(weight, exact, max_relative = 1e-9);
+        }
+        let cells = 1600;
+        let probed = column_weights(&ring, &vec![1.0; cells]);
+        let mean = probed.iter().sum::<f64>() / cells as f64;
+        assert_relative_eq!(mean, exact, max_relative = 4.0 * 0.0067);
+    }
 }

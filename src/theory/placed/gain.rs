@@ -3,6 +3,7 @@
 use super::luck::Luck;
 use super::{PlacedBodies, Sited};
 use crate::theory::fitness::{Model, Norm};
+use crate::theory::jet::{Jet, Scalar};
 use crate::theory::reaction_norm::{Cue, Programme};
 
 /// Standard errors by which a gain must exceed 0 to count.
@@ -15,6 +16,8 @@ pub struct Gain {
     pub ln_r0: f64,
     /// Standard error of that, from the fates and bodies that were drawn; 0 where nothing was.
     pub standard_error: f64,
+    /// Whether it is a mean over drawn fates.
+    pub draws_fates: bool,
 }
 
 impl Gain {
@@ -41,9 +44,41 @@ struct Difference {
     mean: f64,
     /// Squared standard error of the mean over fates.
     error_square: f64,
+    draws_fates: bool,
+}
+
+/// A mean over fates, and the square of its standard error if they are drawn.
+struct Mean {
+    value: f64,
+    error_square: Option<f64>,
 }
 
 impl Model {
+    /// Slack that the first and the second derivative of ln R0 along a jet's direction want, because
+    /// bodies are a sample: [`SURE`] standard errors of each, from the spread between bodies of what
+    /// they give. 0 where all bodies are alike.
+    pub(in crate::theory) fn slack_of_derivatives(
+        &self,
+        bodies: &PlacedBodies,
+        norm: &Norm<Jet>,
+    ) -> [f64; 2] {
+        if bodies.drawn < 2.0 || bodies.sited.len() < 2 {
+            return [0.0; 2];
+        }
+        let relative = self.life.relative_income(norm.total_responsiveness());
+        let shares = self.shares_of_r0(bodies, norm, relative);
+        let mean = |of: &dyn Fn(&Jet) -> f64| -> f64 {
+            shares.iter().zip(&bodies.sited).map(|(share, sited)| of(share) * sited.weight).sum()
+        };
+        let r0 = mean(&|share| share.value);
+        [1, 2].map(|order| {
+            let derivative = mean(&|share| share.part(order)) / r0;
+            let square =
+                mean(&|share| ((share.part(order) - derivative * share.value) / r0).powi(2));
+            SURE * (square / (bodies.drawn - 1.0)).sqrt()
+        })
+    }
+
     /// What `programme` leaves and gains on `generalist` in placed bodies, compared body by body on
     /// fates that no search has seen.
     ///
@@ -69,7 +104,9 @@ impl Model {
         let alike = self.expected_propagules(generalist);
         let r0 = (alike + mean).max(0.0);
         let error = within.max(between).sqrt();
-        let gain = Gain { ln_r0: libm::log(r0) - libm::log(alike), standard_error: error / r0 };
+        let ln_r0 = libm::log(r0) - libm::log(alike);
+        let draws_fates = differences.iter().any(|difference| difference.draws_fates);
+        let gain = Gain { ln_r0, standard_error: error / r0, draws_fates };
         Judgement { r0, gain }
     }
 
@@ -88,33 +125,35 @@ impl Model {
         let alike = scale * self.survival(body, 1.0) * alike;
         let grown = if relative > 0.0 { scale * self.survival(body, relative) } else { 0.0 };
         let norm = Norm::from(programme);
-        let (mean, error_square) = if grown > 0.0 {
+        let mean = if grown > 0.0 {
             self.mean_over_fates(bodies, sited, rank, (&norm, relative))
         } else {
-            (0.0, 0.0)
+            Mean { value: 0.0, error_square: None }
         };
         Difference {
             weight: sited.weight,
-            mean: grown * mean - alike,
-            error_square: grown * grown * error_square,
+            mean: grown * mean.value - alike,
+            error_square: grown * grown * mean.error_square.unwrap_or(0.0),
+            draws_fates: mean.error_square.is_some(),
         }
     }
 
-    /// Mean of `B V / (m_ext V + m0)` over fates, and the square of its standard error.
+    /// Mean of `B V / (m_ext V + m0)` over fates.
     fn mean_over_fates(
         &self,
         bodies: &PlacedBodies,
         sited: &Sited,
         rank: usize,
         (norm, relative): (&Norm<f64>, f64),
-    ) -> (f64, f64) {
+    ) -> Mean {
         let body = &sited.body;
         let luck = Luck::for_judging(body.cells(), rank as u64);
         let sampled = matches!(luck, Luck::Drawn(_))
             && norm.responsiveness[Cue::Noise.index()] != 0.0
             && !self.has_closed_expectation(bodies, body);
         if !sampled {
-            return (self.placed_output(bodies, body, &luck, norm, relative), 0.0);
+            let value = self.placed_output(bodies, body, &luck, norm, relative);
+            return Mean { value, error_square: None };
         }
         let deeds = self.deeds(body, norm, relative);
         let cost = self.replacement_cost(bodies, body);
@@ -125,8 +164,8 @@ impl Model {
         let pairs: Vec<f64> =
             halves.chunks_exact(2).map(|pair| 0.5 * (pair[0] + pair[1])).collect();
         let count = pairs.len() as f64;
-        let mean = pairs.iter().sum::<f64>() / count;
-        let squares: f64 = pairs.iter().map(|x| (x - mean) * (x - mean)).sum();
-        (mean, squares / ((count - 1.0) * count))
+        let value = pairs.iter().sum::<f64>() / count;
+        let squares: f64 = pairs.iter().map(|x| (x - value) * (x - value)).sum();
+        Mean { value, error_square: Some(squares / ((count - 1.0) * count)) }
     }
 }

@@ -2,7 +2,7 @@
 
 use super::luck::Luck;
 use super::spread::{Care, supports};
-use super::{Body, PlacedBodies, SitedKind};
+use super::{Body, PlacedBodies, Sited, SitedKind};
 use crate::theory::fitness::{Model, Norm};
 use crate::theory::jet::Scalar;
 use crate::theory::reaction_norm::Cue;
@@ -56,15 +56,29 @@ impl Model {
         norm: &Norm<S>,
         relative: S,
     ) -> S {
-        let output = bodies.sited.iter().fold(S::constant(0.0), |sum, sited| {
+        self.shares_of_r0(bodies, norm, relative)
+            .into_iter()
+            .zip(&bodies.sited)
+            .fold(S::constant(0.0), |sum, (r0, sited)| sum + r0 * sited.weight)
+    }
+
+    /// What each body would give for R0 if all were like it.
+    pub(super) fn shares_of_r0<S: Scalar>(
+        &self,
+        bodies: &PlacedBodies,
+        norm: &Norm<S>,
+        relative: S,
+    ) -> Vec<S> {
+        let scale = self.life.income_eu_per_h / self.life.propagule_cost_eu;
+        let share = |sited: &Sited| {
             let grown = self.survival(&sited.body, relative);
             if grown.value() <= 0.0 {
-                return sum;
+                return S::constant(0.0);
             }
             let adult = self.placed_output(bodies, &sited.body, &sited.luck, norm, relative);
-            sum + grown * adult * sited.weight
-        });
-        output * (self.life.income_eu_per_h / self.life.propagule_cost_eu)
+            grown * adult * scale
+        };
+        bodies.sited.iter().map(share).collect()
     }
 
     /// Probability that a propagule becomes this body, `exp(-m_j T)`.
@@ -263,7 +277,7 @@ pub(super) fn share_left<S: Scalar>(germ: S, cost: f64) -> S {
     if germ.value() > cost { S::constant(1.0) - S::constant(cost) / germ } else { S::constant(0.0) }
 }
 
-/// `n / sum_i (1 / S_i)`; 0 if any S_i is.
+/// `n / sum_i (1 / S_i)`; 0 if any `S_i` is.
 fn harmonic_mean<S: Scalar>(support: &[S]) -> S {
     if support.iter().any(|s| !(s.value() > 0.0 && s.value().recip().is_finite())) {
         return S::constant(0.0);

@@ -9,7 +9,7 @@
 //! 2. A cell without room for a daughter (see [`Plan`]) keeps its reserve and divides as soon as a
 //!    death makes room.
 //! 3. Fields are steady: incomes are solved anew before time goes on, once the body has gained a
-//!    fiftieth of its cells by division since the last time (in bodies of up to 50 cells: after every
+//!    sixteenth of its cells by division since the last time (in bodies of up to 16 cells: after every
 //!    division), and after every death. Concentrations belong to sites; until the next
 //!    solution cells keep their incomes, and a daughter has its mother's.
 //! 4. A cell is hungry while its income is below its upkeep, and dies when it has been so for

@@ -1,8 +1,9 @@
-//! Timing of developments (to be replaced).
+//! What solving fields in steps costs in accuracy.
+
 use rand::SeedableRng;
 use rand_xoshiro::Xoshiro256PlusPlus;
 
-use super::course::Course;
+use super::course::{Course, STEP};
 use super::*;
 use crate::tissue::Nutrient;
 
@@ -23,27 +24,42 @@ fn rules(cells: usize, demand: f64) -> GrowthRules {
     }
 }
 
+/// Mean duration of growth over some bodies with its standard error, h.
+fn mean_duration(rules: &GrowthRules, step: f64, bodies: usize, seed: u64) -> [f64; 2] {
+    let mut course = Course::in_steps(rules.clone(), step);
+    let mut rng = Xoshiro256PlusPlus::seed_from_u64(seed);
+    let durations: Vec<f64> = (0..bodies)
+        .map(|_| match course.run(1.0, &mut rng).ending {
+            Ending::Adult(hours) | Ending::Stunted(hours) => hours,
+        })
+        .collect();
+    let mean = durations.iter().sum::<f64>() / bodies as f64;
+    let square = durations.iter().map(|hours| (hours - mean).powi(2)).sum::<f64>();
+    [mean, square.sqrt() / bodies as f64]
+}
+
 #[test]
-#[ignore = "timing"]
-fn timing() {
-    for (cells, demand) in
-        [(64, 0.1), (64, 0.5), (512, 0.02), (512, 0.1), (4096, 0.005), (4096, 0.03)]
-    {
-        let mut course = Course::under(rules(cells, demand));
-        let mut rng = Xoshiro256PlusPlus::seed_from_u64(1);
-        let n = (20_000 / cells).max(2);
-        let clock = std::time::Instant::now();
-        let mut last = None;
-        for _ in 0..n {
-            last = Some(course.run(1.0, &mut rng));
+fn solving_in_steps_does_not_change_how_long_growth_takes() {
+    // 1,000 bodies of 64 each way; the difference of means within 4.5 of its standard errors (false
+    // alarm 7e-6), which is less than 1 % of the mean.
+    let rules = rules(64, 0.5);
+    let [[always, error], [steps, other]] =
+        [(0.0, 1), (STEP, 2)].map(|(step, seed)| mean_duration(&rules, step, 1000, seed));
+    let error = 4.5 * error.hypot(other);
+    assert!(error < 0.01 * always, "{error} h are too many to tell");
+    assert!((always - steps).abs() < error, "{steps} h for {always} h");
+}
+
+#[test]
+#[ignore = "prints what steps cost, to choose them by"]
+#[expect(clippy::print_stderr, reason = "a measurement to be read")]
+fn what_steps_cost() {
+    for (cells, demand, bodies) in [(64, 0.5, 1000), (512, 0.1, 40), (4096, 0.03, 3)] {
+        for step in [STEP / 2.0, STEP, 2.0 * STEP] {
+            let clock = std::time::Instant::now();
+            let [mean, error] = mean_duration(&rules(cells, demand), step, bodies, 1);
+            let us = clock.elapsed().as_secs_f64() * 1e6 / (bodies * cells) as f64;
+            eprintln!("{cells} {step}: {mean:.4} +- {error:.4} h, {us:.2} us per cell");
         }
-        let us = clock.elapsed().as_secs_f64() * 1e6 / (n * cells) as f64;
-        let last = last.unwrap();
-        eprintln!(
-            "{cells} {demand}: {us:.2} us/cell {:?} starved {} min income {}",
-            last.ending,
-            last.starved,
-            last.incomes.iter().copied().fold(9.0, f64::min)
-        );
     }
 }

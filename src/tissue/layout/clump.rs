@@ -114,6 +114,8 @@ impl Clump {
             return false;
         };
         self.frontier.fill(&self.ground, filled);
+        // A body without deaths has no pocket that its next cell could close.
+        self.holes = self.holes || self.torn && contacts::may_cut(&self.ground, filled);
         true
     }
 

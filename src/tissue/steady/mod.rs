@@ -25,9 +25,30 @@ use reaction::Release;
 use super::fields::{Fields, Nutrient, Sharing, Waste};
 use super::graph::BodyGraph;
 
+/// How closely fields are solved: the imbalance of a cell that is let pass, relative to what it holds.
+#[derive(Debug, Clone, Copy, PartialEq)]
+struct Precision {
+    /// Nutrient and waste, relative to the diagonal of the balance.
+    reacting: f64,
+    /// Support, relative to its use.
+    support: f64,
+}
+
+impl Precision {
+    const FULL: Self = Self { reacting: 1e-11, support: 2e-6 };
+    const WORKING: Self = Self { reacting: 1e-5, support: 1e-3 };
+}
+
+impl Default for Precision {
+    fn default() -> Self {
+        Self::FULL
+    }
+}
+
 /// Solves fields in the same working memory: once it has seen the largest body, it asks for no more.
 #[derive(Debug, Clone, Default)]
 pub struct SteadySolver {
+    precision: Precision,
     contacts: Contacts,
     linear: Linear,
     /// The field that is being solved, filled up so that contacts can be summed.
@@ -41,6 +62,23 @@ pub struct SteadySolver {
 }
 
 impl SteadySolver {
+    /// A solver for work in which a field is one of thousands: support to some 1e-4 of each cell's own
+    /// value, which leaves viability right to about 1e-5, nutrient and waste to about 1e-4.
+    #[must_use]
+    pub fn working() -> Self {
+        Self { precision: Precision::WORKING, ..Self::default() }
+    }
+
+    /// From now on solves as closely as a new solver.
+    pub(super) fn work_fully(&mut self) {
+        self.precision = Precision::FULL;
+    }
+
+    /// From now on solves as [`Self::working`] says.
+    pub(super) fn work_quickly(&mut self) {
+        self.precision = Precision::WORKING;
+    }
+
     /// The steady nutrient of a body: `u` holds a first guess (the last solution of a body that has
     /// changed a little is best; whatever is not above 0 is replaced by the bath's 1) and then the
     /// solution, relative to the bath, `0 < u <= 1`.

@@ -7,8 +7,6 @@ use super::SteadySolver;
 use super::reaction::Reaction;
 use crate::tissue::graph::BodyGraph;
 
-/// Imbalance at which a cell counts as settled, relative to its diagonal times its value.
-const SETTLED: f64 = 1e-11;
 /// Imbalance relative to the largest of diagonal times value that Newton's method can do nothing about.
 const ROUNDING: f64 = 1e-14;
 /// Steps of Newton's method.
@@ -69,7 +67,7 @@ impl SteadySolver {
     fn take_steps(&mut self, graph: &BodyGraph, reaction: &impl Reaction) -> bool {
         for _ in 0..MOST_STEPS {
             let off = self.linearise(reaction);
-            if off.relative <= SETTLED {
+            if off.relative <= self.precision.reacting {
                 return true;
             }
             if off.absolute <= ROUNDING {

@@ -4,12 +4,6 @@ use super::SteadySolver;
 use super::reaction::Supply;
 use crate::tissue::graph::BodyGraph;
 
-/// Residual at which support counts as settled, relative to what the cell uses.
-///
-/// With leak or without, the operator's inverse has row sums of at most 1 (it averages outputs), so that
-/// no residual above a share of the least support anywhere means no error above that share; support
-/// itself in place of the least gives the same for cells with like neighbours.
-const SETTLED: f64 = 2e-6;
 /// Of the first residual, what is lost in rounding.
 const ROUNDING: f64 = 1e-15;
 
@@ -45,11 +39,15 @@ impl SteadySolver {
         }
     }
 
-    /// Says whether support settled at values above 0.
+    /// Says whether support settled at values above 0: no residual above a share of what the cell uses.
+    ///
+    /// With leak or without, the operator's inverse has row sums of at most 1 (it averages outputs), so
+    /// that no residual above a share of the least support anywhere means no error above that share;
+    /// support itself in place of the least gives the same for cells with like neighbours.
     fn iterate_support(&mut self, graph: &BodyGraph, use_rate: f64) -> bool {
         let n = self.linear.x.len() as f64;
         let mean = self.linear.x.iter().sum::<f64>() / n;
-        let strict = SETTLED * use_rate;
+        let strict = self.precision.support * use_rate;
         // The size at which looking at every cell is first worth its time, and that which rounding
         // leaves: looked at from rest, residuals are of the order of diagonal times output.
         let mut worth_a_look = n * (strict * mean).powi(2) / 6.0;

@@ -36,11 +36,17 @@ pub(super) fn pooled(body: &[Output]) -> [f64; 2] {
 }
 
 /// Working memory of local support.
-#[derive(Debug, Default)]
+#[derive(Debug)]
 pub struct Spreading {
     solver: SteadySolver,
     output: Vec<f64>,
     support: Vec<f64>,
+}
+
+impl Default for Spreading {
+    fn default() -> Self {
+        Self { solver: SteadySolver::working(), output: Vec::new(), support: Vec::new() }
+    }
 }
 
 /// Spreads support by local transport over each colony that becomes adult, `V = n / sum_i (1/S_i)`
