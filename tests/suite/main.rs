@@ -41,6 +41,7 @@ mod simulation_support;
 mod simulation_thresholds;
 mod simulation_torus;
 mod simulation_torus_relatedness;
+mod simulation_turnover;
 mod stats_binomial;
 mod stats_division_of_labour;
 mod stats_mean;
