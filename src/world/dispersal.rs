@@ -176,6 +176,7 @@ mod tests {
     /// 400,000 deviates per case; shares within 4.9 standard errors (false alarm about 1e-6 a site,
     /// below 1e-3 in all).
     #[test]
+    #[expect(clippy::cast_sign_loss, reason = "a remainder is not negative")]
     fn shares_are_those_of_rounded_and_wrapped_normal_deviates() {
         let mut rng = Xoshiro256PlusPlus::seed_from_u64(12);
         for (side, sd) in [(9_usize, 0.7), (8, 1.5), (6, 4.0)] {

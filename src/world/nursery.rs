@@ -16,7 +16,7 @@ use crate::scenario::Settings;
 use crate::tissue::{Developer, Development, Growth};
 
 /// Colonies that share a development on average.
-const SHARED_BY: usize = 64;
+const SHARED_BY: usize = 32;
 
 /// Cells of the developments at hand together, about; and fewest and most developments.
 const CELLS_AT_HAND: usize = 1 << 16;

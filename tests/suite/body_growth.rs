@@ -26,6 +26,7 @@ pub(super) fn rules(plan: Plan, propagule_cells: usize, adult_cells: usize) -> G
     }
 }
 
+#[expect(clippy::needless_pass_by_value, reason = "rules are made on the spot")]
 pub(super) fn fed(demand: f64, upkeep_eu_per_h: f64, rules: GrowthRules) -> GrowthRules {
     let nutrient = Nutrient { demand, kappa: 0.5, exchange: 1.0 };
     GrowthRules {
@@ -71,9 +72,9 @@ fn equal_cells_divide_in_rounds() {
             assert_eq!(body.born_by(round + 7.9).min(100), cells);
         }
         // In the last round 36 of 64 divide; the others keep their reserves and labels.
-        assert_eq!(body.reserves_eu.iter().filter(|eu| **eu == 8.0).count(), 28);
-        assert_eq!(body.reserves_eu.iter().filter(|eu| **eu == 0.0).count(), 72);
-        assert!(body.incomes.iter().all(|income| *income == 1.0));
+        assert_eq!(body.reserves_eu.iter().filter(|eu| **eu > 7.999).count(), 28);
+        assert_eq!(body.reserves_eu.iter().filter(|eu| **eu < 0.001).count(), 72);
+        assert!(body.incomes.iter().all(|income| *income > 1.0 - 1e-12));
     }
 }
 
@@ -102,7 +103,7 @@ fn first_divisions_come_when_the_nutrient_says() {
     for (birth_h, expected) in body.births_h.iter().zip([0.0, first_h, second_h, second_h]) {
         approx::assert_relative_eq!(*birth_h, expected, max_relative = 1e-6);
     }
-    assert_eq!(body.births_h[2], body.births_h[3], "equal cells divide together");
+    assert_eq!(body.born_by(body.births_h[2]), 4, "equal cells divide together");
 }
 
 #[test]
@@ -112,7 +113,7 @@ fn well_fed_cells_divide_sooner() {
         let body = grow(fed(6.0, 0.0, rules(Plan::Chain, 3, 5)), seed);
         assert_eq!(body.labels, [-1, 0, -1, 1, 1]);
         assert!(body.reserves_eu[1] > 7.0 && body.reserves_eu[1] < 8.0);
-        assert_eq!(body.births_h[3], body.births_h[4]);
+        assert_eq!(body.born_by(body.births_h[3]), 5);
     }
 }
 
@@ -193,9 +194,10 @@ fn the_same_seed_gives_the_same_body() {
             .zip(1..)
             .map(|([x, y, z], cell)| cell * i64::from(x + 3 * y + 7 * z))
             .sum();
-        let labels: String = body.labels.iter().take(12).map(|label| format!("{label} ")).collect();
+        let daughters = body.labels.iter().filter(|label| **label == 1).count();
+        let eu: f32 = body.reserves_eu.iter().sum();
         let hours = body.births_h.last().copied().unwrap_or(0.0);
-        format!("{sum} | {labels}| {hours:.4} | {}", body.starved)
+        format!("{sum} | {daughters} | {eu:.1} | {hours:.3}")
     };
     let bodies: Vec<String> = [Plan::Clump, Plan::Chain, Plan::Tree, Plan::Shell]
         .into_iter()
@@ -208,5 +210,10 @@ fn the_same_seed_gives_the_same_body() {
             cut(&body)
         })
         .collect();
-    insta::assert_snapshot!(bodies.join("\n"), @"");
+    insta::assert_snapshot!(bodies.join("\n"), @r"
+    -1414 | 31 | 198.5 | 51.814
+    4492 | 29 | 169.5 | 55.174
+    3584 | 29 | 167.3 | 55.260
+    616 | 31 | 198.5 | 51.814
+    ");
 }

@@ -87,10 +87,11 @@ fn the_document_is_as_promised() {
             "median_generation": 10.0, "median_low": 10.0, "median_high": Value::Null,
         },
         "extinct": 0,
+        "never_matured": 3,
         "final": {
             "division_index": 0.9, "division_index_low": Value::Null,
             "division_index_high": Value::Null, "soma_fraction": 0.5,
-            "class": "complete", "route": "noise",
+            "adult_cells": 60.5, "class": "complete", "route": "noise",
         },
         "prediction": {"verdict": "favoured by disruption", "class": "complete"},
         "throughput": {

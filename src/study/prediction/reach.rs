@@ -139,3 +139,48 @@ impl Spread for Reach {
 fn greatest(values: &[f64]) -> f64 {
     values.iter().fold(0.0, |most, value| value.abs().max(most))
 }
+
+#[cfg(test)]
+mod tests {
+    use approx::assert_relative_eq;
+
+    use super::*;
+
+    /// A line of cells that loses a little along its sides.
+    fn line(cells: u32, range_diameters: f64) -> Reach {
+        let mut graph = BodyGraph::with_capacity(cells as usize);
+        for cell in 0..cells {
+            let touching = [cell.checked_sub(1), Some(cell + 1).filter(|next| *next < cells)];
+            graph.push(touching.into_iter().flatten(), 10, 10);
+        }
+        Reach::new(graph, Sharing { range_diameters, leak: 0.01 }, Arc::default())
+    }
+
+    /// Beyond the table a solution is refined, whatever the signs; where both exist they agree.
+    #[test]
+    fn tables_and_refined_solutions_leave_nothing_over() {
+        for (cells, range) in [(5, 0.0), (40, 3.0), (256, 1.0), (300, 3.0), (300, 30.0)] {
+            let reach = line(cells, range);
+            assert_eq!(reach.table.is_empty(), cells > 256);
+            let output: Vec<f64> = (0..cells).map(|i| f64::from(i % 7) - 2.5).collect();
+            let (mut support, mut left) = (output.clone(), output.clone());
+            reach.spread_exactly(&output, &mut support);
+            reach.leave_over(&output, &support, &mut left);
+            assert!(greatest(&left) < 1e-11 * greatest(&output), "{cells} {range}");
+            let made: Vec<f64> = output.iter().map(|output| output.abs()).collect();
+            let mut quick = made.clone();
+            reach.spread(&made, &mut quick);
+            reach.spread_exactly(&made, &mut support);
+            for (quick, exact) in quick.iter().zip(&support) {
+                assert_relative_eq!(quick, exact, max_relative = 1e-5);
+            }
+            reach.reach(3, &mut support);
+            let mut unit = vec![0.0; made.len()];
+            unit[3] = 1.0;
+            reach.spread_exactly(&unit, &mut quick);
+            for (one, other) in support.iter().zip(&quick) {
+                assert_relative_eq!(one, other, max_relative = 1e-5, epsilon = 1e-12);
+            }
+        }
+    }
+}

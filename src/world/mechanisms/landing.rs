@@ -2,15 +2,14 @@
 //!
 //! Colonies that died within the tick count among the parents, by what they released before.
 
-use bevy_ecs::prelude::*;
 use rand::seq::index;
 use rand::{Rng, RngExt};
 
-use crate::scenario::settings::Layout;
+use crate::scenario::settings::{Habitat, Layout};
 use crate::tissue::standard_normal;
 use crate::world::dispersal::Kernel;
 use crate::world::draws::{exponential, geometric};
-use crate::world::resources::{Released, Rules, Vacancies};
+use crate::world::resources::{Released, Vacancies};
 
 /// A propagule that is the first to land on an empty site.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -29,9 +28,10 @@ pub struct Landing {
     crowd: Crowd,
 }
 
-impl FromWorld for Landing {
-    fn from_world(world: &mut World) -> Self {
-        let habitat = &world.resource::<Rules>().0.habitat;
+impl Landing {
+    /// Landing in a habitat.
+    #[must_use]
+    pub fn within(habitat: &Habitat) -> Self {
         match habitat.layout {
             Layout::Mixed => Self::with(None),
             Layout::Torus { dispersal_sites } => {
@@ -39,9 +39,7 @@ impl FromWorld for Landing {
             }
         }
     }
-}
 
-impl Landing {
     /// Landing by `kernel`; none: on any site.
     #[must_use]
     pub fn with(kernel: Option<Kernel>) -> Self {

@@ -22,7 +22,7 @@ pub fn settle_propagules(
     clock: Res<Clock>,
     released: Res<Released>,
     pool: Res<GenePool>,
-    mut landing: Local<Landing>,
+    mut landing: Local<Option<Landing>>,
     mut random: ResMut<Random>,
     mut vacancies: ResMut<Vacancies>,
     mut settlers: ResMut<Settlers>,
@@ -31,6 +31,7 @@ pub fn settle_propagules(
     mut colonies: Query<(&Lifespan, &Vitals)>,
 ) {
     settlers.0.clear();
+    let landing = landing.get_or_insert_with(|| Landing::within(&rules.0.habitat));
     let comers = landing.first_comers(&released, &mut vacancies, &mut random.0);
     if comers.is_empty() {
         return;

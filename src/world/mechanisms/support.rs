@@ -3,6 +3,7 @@
 use bevy_ecs::prelude::*;
 
 use super::only_table;
+use crate::tissue::fields::viability;
 use crate::tissue::{BodyGraph, Sharing, SteadySolver};
 use crate::world::components::{CellCount, Output, Support, Vitals};
 use crate::world::nursery::SharedBodies;
@@ -95,7 +96,7 @@ impl Spreading {
         for (cell, support) in received.iter_mut().zip(&*support) {
             *cell = Support(*support as f32);
         }
-        [crate::tissue::fields::viability(support), summed(body)[1]]
+        [viability(support), summed(body)[1]]
     }
 }
 

@@ -42,9 +42,9 @@ fn one_by_one(
             (place as i64 + step).rem_euclid(side as i64) as usize
         };
         let (row, column) = (along(parent / side), along(parent % side));
-        let site = row * side + column;
-        if vacant.contains(&(site as u32)) && owners[site].is_none() {
-            owners[site] = Some(parent);
+        let landed = row * side + column;
+        if vacant.contains(&(landed as u32)) && owners[landed].is_none() {
+            owners[landed] = Some(parent);
         }
     }
     let taken = owners.iter().enumerate().filter_map(|(site, owner)| Some((site, (*owner)?)));
@@ -82,7 +82,7 @@ fn assert_same_distribution(what: &str, a: &[u32], b: &[u32]) {
 /// that what one site's settler leaves for the other counts too.
 fn outcomes(
     sites: usize,
-    vacant: &[u32; 2],
+    vacant: [u32; 2],
     trials: u32,
     mut land: impl FnMut() -> Vec<FirstComer>,
 ) -> Vec<u32> {
@@ -111,13 +111,13 @@ fn first_comers_are_those_of_propagules_landed_one_by_one() {
         let vacant = [4, 5];
         let kernel = Kernel::new(sites, sd).expect("a local kernel");
         let oracle =
-            outcomes(sites, &vacant, TRIALS, || one_by_one(side, sd, &released, &vacant, &mut rng));
+            outcomes(sites, vacant, TRIALS, || one_by_one(side, sd, &released, &vacant, &mut rng));
         let thrown =
-            outcomes(sites, &vacant, TRIALS, || throw(&kernel, &released, &vacant, &mut rng));
+            outcomes(sites, vacant, TRIALS, || throw(&kernel, &released, &vacant, &mut rng));
         assert_same_distribution(&format!("thrown, {side}, {sd}"), &thrown, &oracle);
         let mut memory = Crowd::default();
         let told =
-            outcomes(sites, &vacant, TRIALS, || memory.land(&kernel, &released, &vacant, &mut rng));
+            outcomes(sites, vacant, TRIALS, || memory.land(&kernel, &released, &vacant, &mut rng));
         assert_same_distribution(&format!("crowd, {side}, {sd}"), &told, &oracle);
     }
 }
