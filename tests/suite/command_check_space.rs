@@ -190,7 +190,7 @@ fn each_warning_of_space_at_its_limit() {
         (
             "no-interior-cell",
             vec!["body.plan=chain", small, exposure],
-            vec!["body.plan=chain", small],
+            vec!["body.plan=chain", small, noise],
         ),
         (
             "cue-cannot-vary",

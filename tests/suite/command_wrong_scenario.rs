@@ -166,7 +166,7 @@ fn space_out_of_range() {
         ),
         ("[nutrient]\nbath_mM = 0", "`nutrient.bath_mM` = 0 is out of range"),
         ("[nutrient]\nhalf_saturation_mM = 0", "`nutrient.half_saturation_mM` = 0 is out of"),
-        ("[nutrient]\nuptake_fmol_per_h = 0", "must be a number above 0, at most 1000000000"),
+        ("[nutrient]\nuptake_fmol_per_h = 0", "must be a number from 0.000000001 to 1000000000"),
         ("[nutrient]\ndiffusivity_um2_per_s = 0", "`nutrient.diffusivity_um2_per_s` = 0 is out"),
         ("[nutrient]\nexchange = inf", "`nutrient.exchange` = inf is not a finite number"),
         ("[waste]\nrelease_fmol_per_h = 0", "`waste.release_fmol_per_h` = 0 is out of range"),

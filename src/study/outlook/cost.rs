@@ -9,14 +9,17 @@ use crate::scenario::settings::Tick;
 /// and every cell is fully fed.
 const CELL_LIVES_PER_SECOND: f64 = 1e7;
 
-/// How many times as long a cell life takes where support is local.
+/// How many times as long a cell life takes where support is local. Rough, as what follows: measured
+/// on bodies of 64 and 512 cells.
 const LOCAL_SUPPORT: f64 = 2.5;
 
-/// How many times as long a cell life takes where fields decide incomes, or bodies are no clumps.
-const SHAPED_BODIES: f64 = 2.0;
+/// How many times as long a cell life takes where fields decide incomes. Bodies that starve take
+/// longer still.
+const FIELDS: f64 = 3.0;
 
-/// Time that a tick takes in which nothing happens, s.
-const SECONDS_PER_TICK: f64 = 1e-6;
+/// Time that a tick takes in which nothing happens, s, and for each site besides. Measured on 16 to
+/// 4,096 sites.
+const SECONDS_PER_TICK: [f64; 2] = [6e-7, 2e-9];
 
 /// Memory that a cell takes, bytes: its components, the ECS's record of their changes and of the
 /// entity, and what spawning needs. Measured as the growth of peak memory between 1 and 4 million cells.
@@ -44,9 +47,11 @@ impl Cost {
         let cell_lives = cells * generations * replicates;
         let lives = cell_lives * slowness(settings) / CELL_LIVES_PER_SECOND;
         let ticks = generations * replicates * ticks_per_generation(settings, generation_h);
+        let [each, per_site] = SECONDS_PER_TICK;
+        let idle = ticks * (each + per_site * settings.habitat.sites as f64);
         Self {
             cell_lives,
-            seconds: (lives + ticks * SECONDS_PER_TICK) / at_once,
+            seconds: (lives + idle) / at_once,
             bytes: cells * BYTES_PER_CELL * at_once,
         }
     }
@@ -63,7 +68,6 @@ fn ticks_per_generation(settings: &Settings, generation_h: f64) -> f64 {
 /// How many times as long a cell life takes as where nothing of space matters.
 fn slowness(settings: &Settings) -> f64 {
     let local = if settings.support.is_some() { LOCAL_SUPPORT } else { 1.0 };
-    let clump = settings.body.plan == crate::tissue::Plan::Clump;
-    let shaped = if settings.fields().act() || !clump { SHAPED_BODIES } else { 1.0 };
-    local * shaped
+    let fields = if settings.fields().act() { FIELDS } else { 1.0 };
+    local * fields
 }

@@ -214,8 +214,9 @@ impl Warning {
                  supported parts"
             ),
             Self::TurnoverTooCostly { share } => format!(
-                "replacing dead cells costs {share:.2} times what cells have for propagules at \
-                 the start, so nothing is left for them"
+                "replacing dead cells costs {} times what cells have for propagules at the \
+                 start, so nothing is left for them",
+                if *share < 1e4 { format!("{share:.2}") } else { format!("{share:.1e}") }
             ),
             Self::TorusKernel { dispersal_sites, side, home_share } => {
                 kernel_text(*dispersal_sites, *side, *home_share)

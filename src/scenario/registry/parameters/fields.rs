@@ -42,8 +42,8 @@ pub(crate) struct WasteParameters {
 
 /// Concentrations, mM: from a thousandth of a nM to pure liquids.
 const CONCENTRATION: Real = Real::from_to(1e-6, 1e5);
-/// Amounts per cell, fmol/h: up to those of cells a millimetre across.
-const RATE: Real = Real::above_to(0.0, 1e9);
+/// Amounts per cell, fmol/h: from next to nothing to those of cells a millimetre across.
+const RATE: Real = Real::from_to(1e-9, 1e9);
 /// Diffusivities, um^2/s: from those of a stiff gel to those of a gas.
 const DIFFUSIVITY: Real = Real::from_to(1e-3, 1e8);
 /// Relative conductances: from an almost sealed body to a well stirred one.
