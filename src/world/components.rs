@@ -148,7 +148,8 @@ pub struct Vitals {
     pub hazard_per_h: f64,
 }
 
-/// When a colony's stock for propagules begins to grow: its adulthood, h.
+/// When a colony's stock for propagules begins to grow as it does: its adulthood, or the last
+/// replacement of a cell, h.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct StockSince(pub f64);
 
@@ -156,8 +157,9 @@ pub struct StockSince(pub f64);
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct StockUntil(pub f64);
 
-/// Stock at adulthood, in propagules: uniform on [-1/2, 1/2), so that a life, whose propagules are
-/// counted to the nearest whole one, releases `rate * length` on average.
+/// Stock at that time, in propagules. At adulthood it is uniform on [-1/2, 1/2), so that a life, whose
+/// propagules are counted to the nearest whole one, releases `rate * length` on average; later it is
+/// what is left over.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct HeadStart(pub f64);
 
@@ -165,16 +167,17 @@ pub struct HeadStart(pub f64);
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct StockRate(pub f64);
 
-/// A colony's stock for propagules, from the adulthood of the last adult that lived on its site.
+/// A colony's stock for propagules, from the adulthood (or the last replacement of a cell) of the last
+/// adult that lived on its site.
 ///
 /// One column per number, since all sites are gone through at every tick.
 #[derive(Bundle, Debug, Clone, Copy, Default)]
 pub struct PropaguleStock {
-    /// Adulthood.
+    /// Adulthood, or the last replacement.
     pub since: StockSince,
     /// Death.
     pub until: StockUntil,
-    /// What there is at adulthood.
+    /// What there is then.
     pub head_start: HeadStart,
     /// Its growth.
     pub rate: StockRate,

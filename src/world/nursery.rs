@@ -154,4 +154,12 @@ impl SharedBodies {
     pub fn of(&self, site: usize) -> Option<&SharedBody> {
         self.0.get(site).and_then(Option::as_deref)
     }
+
+    /// The body of the colony of `site` in a world where colonies share bodies.
+    ///
+    /// # Panics
+    /// When nobody ever settled there, or every colony has a body of its own.
+    pub(super) fn shared_by(&self, site: usize) -> &SharedBody {
+        self.of(site).expect("colonies share bodies in spatial scenarios, from their settlement on")
+    }
 }

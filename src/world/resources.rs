@@ -188,6 +188,14 @@ pub struct EarlierReleases {
     pub of_tick: Vec<(u32, u64)>,
 }
 
+impl EarlierReleases {
+    /// Nothing has been released in this tick yet; there are so many sites.
+    pub fn begin_tick(&mut self, sites: usize) {
+        self.of_tick.clear();
+        self.of_life.resize(sites, 0);
+    }
+}
+
 /// A propagule that has found an empty site.
 #[derive(Debug, Clone, Copy)]
 pub struct Settler {

@@ -7,8 +7,10 @@ use somadawn::scenario::Settings;
 use somadawn::scenario::settings::{Nutrient, Support};
 use somadawn::study::{prediction, start};
 use somadawn::theory::{Cue, CueSet, Programme, Verdict};
+use somadawn::tissue::Ending;
 use somadawn::world::Population;
-use somadawn::world::nursery::Developments;
+use somadawn::world::components::Output;
+use somadawn::world::nursery::{Developments, SharedBody};
 use somadawn::world::resources::Genotype;
 
 const VIABILITY: f64 = 1.4;
@@ -249,16 +251,72 @@ fn shared_developments_are_draws_like_any_other() {
     let mut settings = scenario(Cue::Noise);
     settings.body.adult_cells = 40;
     settings.budget.division_cv = 0.2;
-    let sample = |shared_by: usize, seed: u64| -> Vec<f64> {
+    let traits = |body: &SharedBody| {
+        let Ending::Adult(hours) = body.development.ending else {
+            panic!("a body that never matured")
+        };
+        let labels = body.development.labels.iter().map(|label| f64::from(*label)).sum::<f64>();
+        [body.mean_income, hours, labels]
+    };
+    let sample = |shared_by: usize, seed: u64| -> Vec<[f64; 3]> {
         let mut rng = generator(seed);
         let mut developments = Developments::of(&settings).shared_by(shared_by);
-        (0..4_000).map(|_| developments.draw(1.0, &mut rng).0.mean_income).collect()
+        (0..4_000).map(|_| traits(&developments.draw(1.0, &mut rng).0)).collect()
     };
-    let (own, own_error) = mean_and_error(&sample(1, 71));
-    let spread = own_error * 4_000_f64.sqrt();
-    let (shared, _) = mean_and_error(&sample(32, 72));
-    let error = own_error.hypot(spread / 157_f64.sqrt());
-    assert!(spread > 0.0 && (own - shared).abs() < 4.0 * error, "{own} {shared} +- {error}");
+    let (own, shared) = (sample(1, 71), sample(32, 72));
+    for at in 0..3 {
+        let [(own, own_error), (shared, _)] = [&own, &shared]
+            .map(|sample| mean_and_error(&sample.iter().map(|body| body[at]).collect::<Vec<_>>()));
+        let spread = own_error * 4_000_f64.sqrt();
+        let error = own_error.hypot(spread / 157_f64.sqrt());
+        assert!(spread > 0.0 && (own - shared).abs() < 4.0 * error, "{own} {shared} +- {error}");
+    }
+}
+
+/// Bodies whose core starves at once never come to 55 cells: every colony gives up its site when its
+/// growth has stopped, or dies before, and the population dies out, with a juvenile hazard or without.
+#[test]
+fn colonies_that_cannot_grow_up_are_counted_and_give_up_their_sites() {
+    for juvenile_hazard_per_h in [0.0, 1e-9] {
+        let mut settings = scenario(Cue::Noise);
+        settings.body.adult_cells = 55;
+        settings.nutrient = Some(starving_nutrient());
+        settings.budget.upkeep_eu_per_h = 0.3;
+        settings.budget.starvation_h = 0.0;
+        settings.life.juvenile_hazard_per_h = juvenile_hazard_per_h;
+        let founder = |site| Genotype::of_founder(Programme::generalist(0.0), site);
+        let mut population = Population::founded(&settings, 5.0, generator(31), founder);
+        for _ in 0..2_000 {
+            population.tick();
+        }
+        assert_eq!(population.alive(), 0);
+        assert_eq!(population.ledger().never_matured, settings.habitat.sites as u64);
+    }
+}
+
+/// Grown to 55 cells in little more than the grace of their hungry cells, bodies lose the core after.
+#[test]
+fn adults_whose_core_has_starved_live_on_what_is_left() {
+    let mut settings = scenario(Cue::Noise);
+    settings.body.adult_cells = 55;
+    settings.support = None;
+    settings.nutrient = Some(starving_nutrient());
+    settings.budget.upkeep_eu_per_h = 0.1;
+    settings.budget.starvation_h = 200.0;
+    let mut population = adults_of(&settings);
+    for colony in population.adults() {
+        let cells = colony.outputs.len();
+        assert!((20..55).contains(&cells), "{cells} cells");
+        let income = colony.budgets.iter().map(|b| b.soma_eu_per_h + b.germ_eu_per_h);
+        assert!(income.min_by(f32::total_cmp).is_some_and(|least| least >= 0.1 - 1e-6));
+        let sum = |of: &dyn Fn(&Output) -> f32| -> f64 {
+            colony.outputs.iter().map(|cell| f64::from(of(cell))).sum()
+        };
+        let viability = sum(&|cell| cell.viability) / cells as f64;
+        approx::assert_relative_eq!(colony.vitals.viability, viability, max_relative = 1e-12);
+        let fecundity = sum(&|cell| cell.fecundity);
+        approx::assert_relative_eq!(colony.vitals.fecundity, fecundity, max_relative = 1e-12);
+    }
 }
 
 /// Mean responsiveness to income after 200 generations.

@@ -140,7 +140,8 @@ impl Course {
         let next = self.queue.peek().map_or(f64::INFINITY, |Reverse(due)| due.at_h);
         let division_h = if state.grown { f64::INFINITY } else { next };
         let next_h = division_h.min(state.starving_h);
-        if self.is_stale(division_h) && next_h > state.now_h + state.equal_h {
+        let deadly = division_h > state.starving_h;
+        if self.is_stale(division_h) && (deadly || next_h > state.now_h + state.equal_h) {
             self.solve();
             return None;
         }

@@ -53,6 +53,31 @@ fn assert_near(field: &[f64], exact: &[f64], tolerance: f64) {
     }
 }
 
+/// Outputs of germ and soma in no order, and of a single cell: what a working solver lets pass is said
+/// in its documentation.
+#[test]
+fn a_working_solver_is_as_close_as_it_says() {
+    let (mut working, mut full) = (SteadySolver::working(), SteadySolver::default());
+    let viability = |support: &[f64]| crate::tissue::fields::viability(support);
+    for cells in [13, 64, 300, 1_000] {
+        let graph = body(cells);
+        let mixed = (0..cells).map(|i| if i * i % 7 < 3 { 0.9 } else { 1e-3 }).collect();
+        let lone = (0..cells).map(|i| if i == cells / 2 { 1.0 } else { 0.0 }).collect();
+        let outputs: [Vec<f64>; 2] = [mixed, lone];
+        for output in outputs {
+            for range_diameters in [0.3, 1.0, 3.0, 10.0] {
+                let sharing = Sharing { range_diameters, leak: 0.1 };
+                let [mut quick, mut exact] = [(); 2].map(|()| vec![0.0; cells]);
+                working.support(&graph, &sharing, &output, &mut quick);
+                full.support(&graph, &sharing, &output, &mut exact);
+                assert_near(&quick, &exact, 1e-3);
+                let (quick, exact) = (viability(&quick), viability(&exact));
+                approx::assert_relative_eq!(quick, exact, max_relative = 2e-5);
+            }
+        }
+    }
+}
+
 #[test]
 fn nutrient_is_that_of_the_slow_solver() {
     let mut solver = SteadySolver::default();

@@ -25,7 +25,7 @@ const MOST_PROPAGULES_OF_A_TICK: f64 = (1_u64 << 31) as f64;
 
 /// Draws the lifespan of every new adult and starts its stock.
 ///
-/// The colony dies when its integrated hazard passes an Exp(1) draw; its hazard is constant here,
+/// The colony dies when its integrated hazard passes an Exp(1) draw; its hazard is constant until a cell is replaced,
 /// `m = m_ext + m0 / V` per h, so that is `draw / m` hours after adulthood. Its stock for propagules
 /// grows by `B e0 / c_p` propagules per h, as far as they can be counted.
 pub fn set_lifespans(

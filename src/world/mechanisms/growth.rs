@@ -121,15 +121,12 @@ impl Grown {
 
 /// Dates of a colony that settles now; the death of one that matures is drawn at adulthood.
 ///
-/// A colony that can neither grow up nor die as a juvenile dies out when its growth has stopped.
+/// A colony whose growth has stopped short of adult size leaves nobody: it gives up its site then, if it
+/// has not died as a juvenile before.
 fn dates(now_h: f64, grown: &Grown, doom_h: f64) -> Lifespan {
     let matures = grown.adult_h.is_finite() && grown.adult_h < doom_h;
     let adult_h = if matures { now_h + grown.adult_h } else { f64::INFINITY };
-    let dies_h = match (matures, doom_h.is_finite()) {
-        (true, _) => f64::INFINITY,
-        (false, true) => now_h + doom_h,
-        (false, false) => now_h + grown.stopped_h,
-    };
+    let dies_h = if matures { f64::INFINITY } else { now_h + doom_h.min(grown.stopped_h) };
     Lifespan { founded_h: now_h, adult_h, dies_h }
 }
 
@@ -156,7 +153,12 @@ impl Nursling<'_> {
         if adult_h < self.doom_h {
             plot.mark_surface(growth.exposed());
         }
-        let stopped_h = if adult_h.is_finite() { f64::INFINITY } else { 0.0 };
+        let stopped_h = match (adult_h.is_finite(), pace.net_income_eu_per_h < 0.0) {
+            (true, _) => f64::INFINITY,
+            // Its cells live on as long as hungry cells do, or live on without ever dividing.
+            (false, true) => self.rules.0.budget.starvation_h,
+            (false, false) => 0.0,
+        };
         Grown { adult_h, stopped_h, cells, births: u64::from(cells) }
     }
 

@@ -70,7 +70,7 @@ pub fn spread_support(
     let vitals = vitals.bypass_change_detection();
     for &site in &maturing.0 {
         let here = site as usize;
-        let Some(body) = bodies.of(here) else { continue };
+        let body = bodies.shared_by(here);
         let rows = counts[here].rows(here, rules.0.body.adult_cells);
         let graph = &body.development.graph;
         let body = &outputs[rows.clone()];

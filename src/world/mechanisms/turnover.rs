@@ -128,8 +128,7 @@ pub fn replace_cells(
     let (counts, mut means, mut vitals, mut lives) = only_table(colonies.contiguous_iter_mut());
     let (mut since, mut until, mut head_starts, mut rates) =
         only_table(stocks.contiguous_iter_mut());
-    earlier.of_tick.clear();
-    earlier.of_life.resize(counts.len(), 0);
+    earlier.begin_tick(counts.len());
     let mut adults = Adults {
         rules: &rules,
         clock: &clock,
@@ -155,7 +154,7 @@ pub fn replace_cells(
         adults.expect_next(Event { at_h, site }, &mut calendar, &mut random.0);
     }
     while let Some(event) = calendar.next_replacement(clock.now_h) {
-        let Some(body) = bodies.of(event.site as usize) else { continue };
+        let body = bodies.shared_by(event.site as usize);
         let programme = &pool.0[event.site as usize].programme;
         if let Some(follows) = adults.replace_one(event, body, programme, &mut random.0) {
             ledger.replacements += 1;
