@@ -58,13 +58,12 @@ fn unequal_incomes_favour_position_only_where_exponents_differ() {
 /// `tau = (1 + (m - 1) / (1 + m a)^2) / m`, `a = range^2 / 2`.
 #[test]
 fn the_reach_of_help_sets_the_local_threshold() {
-    for (cells, range) in [(2, 1.0), (3, 1.3), (4, 0.8), (4, 2.0), (4, 1e4)] {
-        let m = f64::from(cells);
+    for (cells, range) in [(2_usize, 1.0), (3, 1.3), (4, 0.8), (4, 2.0), (4, 1e4)] {
+        let m = cells as f64;
         let a = range * range / 2.0;
         let tau = (1.0 + (m - 1.0) / (1.0 + m * a).powi(2)) / m;
-        let count = cells as usize;
         let model_at = |exponents| {
-            let body = adult(earning(&vec![1.0; count]), Some(Table::of_huddle(count, range)));
+            let body = adult(earning(&vec![1.0; cells]), Some(Table::of_huddle(cells, range)));
             of_body(exponents, only(Cue::Noise), body)
         };
         for [v, b] in [[1.8, 1.4], [0.9, 0.6], [3.0, 5.0]] {

@@ -26,7 +26,7 @@ impl Case {
         let bonds: Vec<_> = (0..cells).map(|cell| (cell, (cell + 1) % cells)).collect();
         let leaks: Vec<f64> = (0..cells).map(|cell| 0.3 * (cell % 3) as f64).collect();
         let cell = |i: usize| PlacedCell {
-            kind: CellKind { label: [-1, 1, 1][i % 3], exposed: i % 3 > 0 },
+            kind: CellKind { label: [-1, 1, 1][i % 3], exposed: !i.is_multiple_of(3) },
             income: 1.0 / (1.0 + 0.2 * i as f64),
         };
         let curve = ReturnCurve::sigmoid(0.5, 1.8).expect("legal");

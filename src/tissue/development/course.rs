@@ -265,6 +265,11 @@ impl Course {
     }
 
     fn finish(&mut self, ending: Ending) -> Development {
+        if !self.state.grown {
+            // Grown or not, the final body's fields are solved as closely as any.
+            self.state.grown = true;
+            self.solve();
+        }
         self.cells.save(self.state.now_h);
         self.incomes.resize(self.cells.count(), 1.0);
         self.layout.describe(&mut self.graph);

@@ -49,17 +49,3 @@ fn solving_in_steps_does_not_change_how_long_growth_takes() {
     assert!(error < 0.01 * always, "{error} h are too many to tell");
     assert!((always - steps).abs() < error, "{steps} h for {always} h");
 }
-
-#[test]
-#[ignore = "prints what steps cost, to choose them by"]
-#[expect(clippy::print_stderr, reason = "a measurement to be read")]
-fn what_steps_cost() {
-    for (cells, demand, bodies) in [(64, 0.5, 1000), (512, 0.1, 40), (4096, 0.03, 3)] {
-        for step in [STEP / 2.0, STEP, 2.0 * STEP] {
-            let clock = std::time::Instant::now();
-            let [mean, error] = mean_duration(&rules(cells, demand), step, bodies, 1);
-            let us = clock.elapsed().as_secs_f64() * 1e6 / (bodies * cells) as f64;
-            eprintln!("{cells} {step}: {mean:.4} +- {error:.4} h, {us:.2} us per cell");
-        }
-    }
-}
