@@ -24,7 +24,8 @@ pub use fields::{Fields, Nutrient, Sharing, Waste};
 pub use graph::{BodyGraph, SITES_AROUND};
 pub use growth::{Arrangement, Growth, Pace};
 pub use lattice::{Lattice, NEIGHBOURS, compact_radius_um, site_position_um};
-pub use plan::{Plan, plan_radius_um};
+pub use layout::plan_radius_um;
+pub use plan::Plan;
 pub use steady::SteadySolver;
 
 #[cfg(test)]

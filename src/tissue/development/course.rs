@@ -7,6 +7,7 @@ use rand::Rng;
 
 use super::super::draws::standard_normal;
 use super::super::graph::BodyGraph;
+use super::super::growth::LEAST_COST_SHARE;
 use super::super::layout::{Concentrations, Layout, pick};
 use super::super::steady::SteadySolver;
 use super::cells::Cells;
@@ -17,9 +18,6 @@ use super::{Development, Ending, GrowthRules};
 /// Against solving after every division this left the mean duration of growth to 64 cells (57.7 h, least
 /// income 0.93) as it was to within the 0.1 h that 4,000 bodies tell apart, even at twice the step.
 pub(super) const STEP: f64 = 1.0 / 16.0;
-
-/// Least cost of a division as a share of its mean, where costs vary.
-const LEAST_COST_SHARE: f64 = 0.01;
 
 /// Times that differ by less than this share of the shortest division interval are equal: cells on
 /// equal sites have equal incomes but for what the solver leaves over.

@@ -12,11 +12,13 @@ mod tree;
 use rand::Rng;
 
 use super::graph::BodyGraph;
+use super::lattice::compact_radius_um;
 use super::plan::Plan;
 use chain::Chain;
 use clump::Clump;
 use shell::Shell;
-pub(super) use shell::{shell_graph, shell_radius_diameters};
+pub(super) use shell::shell_graph;
+use shell::shell_radius_diameters;
 use tree::Tree;
 
 /// Marks a place without a cell, or a cell that is no more.
@@ -136,3 +138,15 @@ pub(super) fn pick(choices: usize, rng: &mut impl Rng) -> usize {
 
 #[cfg(test)]
 mod tests;
+
+/// Typical radius of a body of `cells` cells, um: of the ball of the body's volume for `clump` and
+/// `tree`, half the length for `chain`, and of the sphere on which the cells lie for `shell`,
+/// `d sqrt(n sqrt(3) / (8 pi))`.
+#[must_use]
+pub fn plan_radius_um(plan: Plan, cells: usize, cell_diameter_um: f64) -> f64 {
+    match plan {
+        Plan::Clump | Plan::Tree => compact_radius_um(cells, cell_diameter_um),
+        Plan::Chain => cells as f64 * cell_diameter_um / 2.0,
+        Plan::Shell => shell_radius_diameters(cells) * cell_diameter_um,
+    }
+}

@@ -99,7 +99,7 @@ impl Shell {
 }
 
 /// Radius of the sphere on which `cells` cells lie, cell diameters.
-pub(in crate::tissue) fn shell_radius_diameters(cells: usize) -> f64 {
+pub(super) fn shell_radius_diameters(cells: usize) -> f64 {
     (cells as f64 * 3.0_f64.sqrt() / (8.0 * PI)).sqrt()
 }
 
