@@ -159,7 +159,7 @@ pub struct Sample {
     pub fates: Option<usize>,
 }
 
-/// Deviation from the body's mean up to which a cue counts as not varying: rounding of a solver.
+/// Deviation up to which a cue counts as not varying, and an income as full: rounding of a solver.
 const ALIKE: f64 = 1e-9;
 /// Bodies that a sketch keeps, at most.
 const SKETCHED: usize = 2;
@@ -200,5 +200,10 @@ impl Body {
 
     fn cells(&self) -> usize {
         self.kind_of.len()
+    }
+
+    /// Whether every cell earns what a fully fed one does.
+    fn is_fully_fed(&self) -> bool {
+        self.kinds.iter().all(|kind| (kind.income - 1.0).abs() <= ALIKE)
     }
 }

@@ -182,13 +182,12 @@ fn growth_and_maturing_enter_body_by_body() {
     let generation_h = model.generation_h(&model.generalist());
     assert_relative_eq!(generation_h, 70.0 / 3.0 + 0.5, max_relative = 1e-9);
 
-    // Taxed by a fifth. One round of 16 eu in 20 h is 0.8 eu/h saved of 1 earned; taxed, 0.6 saved of
-    // 0.8. In 30 h, 16/30 saved of 22/30 earned; taxed, 29/75 saved. Both B and V fall by a fifth.
+    // Taxed by a fifth, fully fed cells save 0.6 eu/h for 0.8, however long the body takes. Both B and V
+    // fall by a fifth.
     let mut taxed = alike;
     taxed.responsiveness[Cue::Exposure.index()] = 2.0;
-    let slow = (-0.01_f64 * 16.0 / (29.0 / 75.0)).exp();
-    let quick = (-0.01_f64 * 16.0 / 0.6).exp();
-    let exact = 0.64 * 0.5 * f64::midpoint(0.5 * slow, quick);
+    let survival = |hours: f64| (-0.01 * hours).exp();
+    let exact = 0.32 * f64::midpoint(0.5 * survival(30.0 * 0.8 / 0.6), survival(20.0 * 0.8 / 0.6));
     assert_relative_eq!(model.expected_propagules(&taxed), exact, max_relative = 1e-13);
 
     // A tax that takes what bodies save.
@@ -200,6 +199,30 @@ fn growth_and_maturing_enter_body_by_body() {
     assert!(generalist.r0 <= 0.0 && nobody.generation_h(&generalist).is_infinite());
     assert!(nobody.selection_at(&generalist)[0].gradient.is_nan());
     assert!(!nobody.best_programme(&generalist).outdoes(1e-6));
+}
+
+/// By hand: linear cells of incomes 1 and 1/2, z = 1/2: B = 3/4, V = 3/8. The one round of
+/// 16 eu in 30 h is 16/30 eu/h saved of 22/30 earned; taxed by a fifth, 29/75 saved.
+#[test]
+fn unequally_fed_bodies_grow_as_if_in_rounds() {
+    let life = LifeHistory {
+        propagule_cells: 1,
+        juvenile_hazard_per_h: 0.01,
+        upkeep_eu_per_h: 0.2,
+        division_cost_eu: 16.0,
+        cost_per_unit: 0.1,
+        ..bare_life_of(2)
+    };
+    let body = PlacedBody { growth_h: Some(30.0), ..adult(earning(&[1.0, 0.5]), None) };
+    let bodies = PlacedBodies::new([(1.0, body)], 0.0);
+    let returns = [power(1.0), power(1.0)];
+    let model = Model::of_placed(life, returns, only(Cue::Exposure), bodies);
+    let mut taxed = Programme::generalist(0.0);
+    let untaxed = 0.75 * 0.375 * (-0.3_f64).exp();
+    assert_relative_eq!(model.expected_propagules(&taxed), untaxed, max_relative = 1e-13);
+    taxed.responsiveness[Cue::Exposure.index()] = 2.0;
+    let exact = 0.64 * 0.75 * 0.375 * (-0.01_f64 * 16.0 / (29.0 / 75.0)).exp();
+    assert_relative_eq!(model.expected_propagules(&taxed), exact, max_relative = 1e-13);
 }
 
 /// By hand: 4 linear cells of income 2 with z = 1/4, gamma = 3/4 and 4 gammas in all, 6 eu/h; cells are
