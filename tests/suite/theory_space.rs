@@ -225,6 +225,23 @@ fn unequally_fed_bodies_grow_as_if_in_rounds() {
     assert_relative_eq!(model.expected_propagules(&taxed), exact, max_relative = 1e-13);
 }
 
+/// By hand: propagules of adult size, whose hungry cells die after 24 h, so that 2 linear cells of z = 1/2
+/// are left, B = 1 and V = 1/2. Under a hazard of 0.01/h exp(-0.24) of them live to see it, taxed or
+/// not.
+#[test]
+fn bodies_that_need_not_grow_may_wait_for_hungry_cells_to_die() {
+    let life = LifeHistory { juvenile_hazard_per_h: 0.01, cost_per_unit: 0.1, ..bare_life_of(3) };
+    let body = PlacedBody { growth_h: Some(24.0), ..adult(earning(&[1.0; 2]), None) };
+    let bodies = PlacedBodies::new([(1.0, body)], 0.0);
+    let returns = [power(1.0), power(1.0)];
+    let model = Model::of_placed(life, returns, only(Cue::Exposure), bodies);
+    let mut programme = Programme::generalist(0.0);
+    let exact = 0.5 * (-0.24_f64).exp();
+    assert_relative_eq!(model.expected_propagules(&programme), exact, max_relative = 1e-13);
+    programme.responsiveness[Cue::Exposure.index()] = 2.0;
+    assert_relative_eq!(model.expected_propagules(&programme), 0.64 * exact, max_relative = 1e-13);
+}
+
 /// By hand: 4 linear cells of income 2 with z = 1/4, gamma = 3/4 and 4 gammas in all, 6 eu/h; cells are
 /// replaced at 0.02/h for 10 eu, 0.8 eu/h for all 4: 13/15 of every budget is left. With V = 1/4
 /// and births (13/15 0.75)^2 each.

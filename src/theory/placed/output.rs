@@ -95,12 +95,13 @@ impl Model {
     /// and T is the inverse ratio times as long. In a body whose cells are all fully fed f is 1 and that
     /// is exact, however divisions come. Elsewhere f is what cells earn on average if T is that of
     /// divisions in rounds: exact where divisions do come in rounds of cells that earn alike, or there is
-    /// no upkeep; otherwise an estimate. Whoever starves does so with and without the tax.
+    /// no upkeep; otherwise an estimate. Where propagules divide no more, T is how long they wait for
+    /// hungry cells to die. Whoever starves does so with and without the tax, and as soon.
     fn taxed_growth_h<S: Scalar>(&self, body: &Body, relative: S) -> Option<S> {
         let full_h = body.growth_h?;
         let spent = self.life.rounds_cost_eu();
         if full_h <= 0.0 || spent == 0.0 {
-            return Some(S::constant(0.0));
+            return Some(S::constant(full_h));
         }
         let upkeep = self.life.upkeep_eu_per_h;
         let saved_untaxed =
