@@ -36,6 +36,8 @@ pub struct PlacedCell {
 pub struct PlacedBody {
     /// Its cells.
     pub cells: Vec<PlacedCell>,
+    /// How many of its cells touch another; where cells are replaced, only these are.
+    pub cells_in_contact: usize,
     /// Hours from propagule to adult at full income; none: it never matured.
     pub growth_h: Option<f64>,
     /// How its cells share the viability task's product, in the same order; none: all of it is
@@ -50,7 +52,7 @@ pub struct PlacedBodies {
     sited: Vec<Sited>,
     /// How many bodies were drawn; 1 where the probabilities are exact.
     drawn: f64,
-    /// Rate at which an adult's cells are replaced (tau), 1/h per cell.
+    /// Rate at which an adult's cells that touch another are replaced (tau), 1/h per cell.
     turnover_per_h: f64,
 }
 
@@ -68,6 +70,7 @@ struct Body {
     kinds: Vec<SitedKind>,
     /// Entry of `kinds` of each cell.
     kind_of: Vec<u32>,
+    cells_in_contact: usize,
     growth_h: Option<f64>,
     spread: Option<Arc<dyn Spread>>,
 }
@@ -85,7 +88,8 @@ struct SitedKind {
 impl PlacedBodies {
     /// Bodies in these numbers: how many of a sample are like each (they sum to the sample's size),
     /// or their exact probabilities (they sum to 1). Bodies in no number are left out; one without
-    /// cells counts, and leaves nothing. `turnover_per_h` is the rate at which each cell of an adult is replaced, 0 or more.
+    /// cells counts, and leaves nothing. `turnover_per_h` is the rate at which each cell of an adult that touches
+    /// another is replaced, 0 or more.
     #[must_use]
     pub fn new(bodies: impl IntoIterator<Item = (f64, PlacedBody)>, turnover_per_h: f64) -> Self {
         let bodies: Vec<(f64, PlacedBody)> =
@@ -195,7 +199,8 @@ impl Body {
         }
         let growth_h = body.growth_h.filter(|hours| hours.is_finite() && *hours >= 0.0);
         let kinds = kinds.into_iter().flatten().collect();
-        Self { kinds, kind_of, growth_h, spread: body.spread }
+        let PlacedBody { cells_in_contact, spread, .. } = body;
+        Self { kinds, kind_of, cells_in_contact, growth_h, spread }
     }
 
     fn cells(&self) -> usize {

@@ -265,6 +265,23 @@ fn replacements_are_paid_from_all_germ_budgets() {
     assert_relative_eq!(linear.generalist().soma_share, 0.45, max_relative = 1e-9);
 }
 
+/// By hand, as above, but only 3 of the 4 cells touch another: 0.6 eu/h of 6, so that 0.9 of every budget is
+/// left. A cell by itself has nobody to pay for.
+#[test]
+fn only_cells_that_touch_another_are_paid_for() {
+    let propagules = |cells: usize, cells_in_contact: usize| {
+        let life =
+            LifeHistory { income_eu_per_h: 2.0, division_cost_eu: 10.0, ..bare_life_of(cells) };
+        let body = adult(earning(&vec![1.0; cells]), None);
+        let bodies = PlacedBodies::new([(1.0, PlacedBody { cells_in_contact, ..body })], 0.02);
+        let model = Model::of_placed(life, [1.0, 2.0].map(power), only(Cue::Noise), bodies);
+        model.expected_propagules(&Programme::generalist(-(3.0_f64.ln())))
+    };
+    let exact = 2.0 * 4.0 * (0.9 * 0.75_f64).powi(2) * 0.25;
+    assert_relative_eq!(propagules(4, 3), exact, max_relative = 1e-13);
+    assert_relative_eq!(propagules(1, 0), 2.0 * 0.5625 * 0.25, max_relative = 1e-13);
+}
+
 /// A mixed sample of differently labelled bodies: the cue is centred in each body by itself.
 #[test]
 fn labels_are_read_cell_by_cell() {

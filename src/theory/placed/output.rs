@@ -259,10 +259,11 @@ impl Model {
         }
     }
 
-    /// What an adult's replacements cost it, over e0: `tau n c_div / e0`.
+    /// What an adult's replacements cost it, over e0: `tau n_c c_div / e0`, `n_c` being its cells that
+    /// touch another. Nobody replaces the others, so that a body of one cell pays nothing.
     pub(super) fn replacement_cost(&self, bodies: &PlacedBodies, body: &Body) -> f64 {
         let per_cell = bodies.turnover_per_h * self.life.division_cost_eu;
-        per_cell * body.cells() as f64 / self.life.income_eu_per_h
+        per_cell * body.cells_in_contact as f64 / self.life.income_eu_per_h
     }
 
     /// Viability of a body of generalists.
