@@ -50,6 +50,8 @@ pub struct PlacedBody {
 pub struct PlacedBodies {
     /// Bodies with their probabilities.
     sited: Vec<Sited>,
+    /// Probability of a body without cells, which is none of those.
+    empty: f64,
     /// How many bodies were drawn; 1 where the probabilities are exact.
     drawn: f64,
     /// Rate at which an adult's cells that touch another are replaced (tau), 1/h per cell.
@@ -99,9 +101,11 @@ impl PlacedBodies {
             let luck = Arc::new(Luck::for_searching(body.cells.len(), rank as u64));
             Sited { weight: number / drawn, body: Arc::new(Body::of(body)), luck }
         };
-        let alive = bodies.into_iter().filter(|(_, body)| !body.cells.is_empty());
-        let sited = alive.enumerate().map(site).collect();
-        Self { sited, drawn, turnover_per_h }
+        let (empty, alive): (Vec<_>, Vec<_>) =
+            bodies.into_iter().partition(|(_, body)| body.cells.is_empty());
+        let empty = empty.iter().map(|(number, _)| number / drawn).sum();
+        let sited = alive.into_iter().enumerate().map(site).collect();
+        Self { sited, empty, drawn, turnover_per_h }
     }
 
     /// Fewer bodies with fewer fates, for finding one's way: the first that matured.
@@ -116,7 +120,7 @@ impl PlacedBodies {
             sited.weight = weight;
             sited.luck = Arc::new(Luck::for_sketching(sited.body.cells(), rank as u64));
         }
-        Self { drawn: 1.0, sited, turnover_per_h: self.turnover_per_h }
+        Self { drawn: 1.0, sited, empty: 0.0, turnover_per_h: self.turnover_per_h }
     }
 
     /// Mean growth of the bodies that mature, h; `None` where none does.

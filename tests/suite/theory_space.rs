@@ -282,6 +282,31 @@ fn only_cells_that_touch_another_are_paid_for() {
     assert_relative_eq!(propagules(1, 0), 2.0 * 0.5625 * 0.25, max_relative = 1e-13);
 }
 
+/// By hand: of 100 bodies drawn half are alike and gain d, half leave nothing, with the mean gain d/2 and the
+/// standard error `d/2 / sqrt(99)`: the share of R0 that is gained is sqrt(99) of its errors, whether
+/// the others have no cells or never mature.
+#[test]
+fn bodies_that_leave_nothing_are_part_of_the_spread() {
+    let cells = || {
+        let kinds = [1, -1].map(|label| CellKind { label, exposed: true });
+        kinds.map(|kind| somadawn::theory::PlacedCell { kind, income: 1.0 }).to_vec()
+    };
+    let lost = |cells| PlacedBody { growth_h: None, ..adult(cells, None) };
+    for lost in [lost(cells()), lost(Vec::new())] {
+        let bodies = PlacedBodies::new([(50.0, adult(cells(), None)), (50.0, lost)], 0.0);
+        let returns = [power(2.0), power(2.0)];
+        let model = Model::of_placed(bare_life_of(2), returns, only(Cue::Lineage), bodies);
+        let best = model.best_programme(&model.generalist());
+        let gained = 1.0 - (-best.gain.ln_r0).exp();
+        assert!(gained > 0.5, "{best:?}");
+        assert_relative_eq!(
+            gained / best.gain.standard_error,
+            99.0_f64.sqrt(),
+            max_relative = 1e-9
+        );
+    }
+}
+
 /// A mixed sample of differently labelled bodies: the cue is centred in each body by itself.
 #[test]
 fn labels_are_read_cell_by_cell() {

@@ -98,8 +98,10 @@ impl Model {
             .collect();
         let mean: f64 = differences.iter().map(|d| d.weight * d.mean).sum();
         let within: f64 = differences.iter().map(|d| d.weight * d.weight * d.error_square).sum();
-        let spread: f64 =
-            differences.iter().map(|d| d.weight * (d.mean - mean) * (d.mean - mean)).sum();
+        let around_mean = |weight: f64, difference: f64| weight * (difference - mean).powi(2);
+        let spread: f64 = differences.iter().map(|d| around_mean(d.weight, d.mean)).sum();
+        // Bodies without cells differ by nothing, as those do that never mature.
+        let spread = spread + around_mean(bodies.empty, 0.0);
         let between = if bodies.drawn >= 2.0 { spread / (bodies.drawn - 1.0) } else { 0.0 };
         let alike = self.expected_propagules(generalist);
         let r0 = (alike + mean).max(0.0);
