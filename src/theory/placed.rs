@@ -14,7 +14,7 @@ mod spread;
 
 use std::sync::Arc;
 
-pub use gain::Gain;
+pub use gain::{Gain, SURE};
 pub use spread::Spread;
 
 use self::luck::Luck;
