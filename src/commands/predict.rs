@@ -10,6 +10,7 @@ use crate::scenario::{Override, Settings, nearest};
 use crate::study::prediction::{
     CriticalQuery, Prediction, SamplingPart, predict, predict_with_critical,
 };
+use crate::theory::placed::SURE;
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -152,11 +153,18 @@ fn rows(prediction: &Prediction) -> Vec<(String, String)> {
 
 /// How many bodies and fates the numbers come from, and what that leaves uncertain.
 fn basis(sampling: &SamplingPart) -> String {
-    let SamplingPart { bodies, maturing_share, fates, gain_error } = *sampling;
+    let SamplingPart { bodies, maturing_share, fates, gain_error, undecided } = *sampling;
     let fates = fates.map_or_else(String::new, |fates| format!(", {fates} random fates each"));
     let matured = format!("{:.0} % of which matured", 100.0 * maturing_share);
     let error = gain_error.map_or_else(String::new, |error| {
-        format!("; standard error of the gain {:.2} %", 100.0 * error)
+        if undecided {
+            format!(
+                "; no programme beats the generalist by more than four standard errors ({:.2} %)",
+                100.0 * SURE * error
+            )
+        } else {
+            format!("; standard error of the gain {:.2} %", 100.0 * error)
+        }
     });
     format!("{bodies} bodies grown, {matured}{fates}{error}")
 }
@@ -172,6 +180,23 @@ fn number(value: Option<f64>) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn what_gains_rest_on_tells_none_from_one_that_chance_may_explain() {
+        let known = SamplingPart {
+            bodies: 40,
+            maturing_share: 0.75,
+            fates: None,
+            gain_error: Some(0.002),
+            undecided: false,
+        };
+        let told = "40 bodies grown, 75 % of which matured; standard error of the gain 0.20 %";
+        assert_eq!(basis(&known), told);
+        let undecided = SamplingPart { fates: Some(16), undecided: true, ..known };
+        let told = "40 bodies grown, 75 % of which matured, 16 random fates each; no programme beats \
+                    the generalist by more than four standard errors (0.80 %)";
+        assert_eq!(basis(&undecided), told);
+    }
 
     #[test]
     fn brackets_are_two_rising_finite_numbers() {

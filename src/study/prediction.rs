@@ -53,10 +53,15 @@ pub struct SamplingPart {
     pub bodies: usize,
     /// Share of them that matured.
     pub maturing_share: f64,
-    /// Random fates drawn per body; null where all were summed, or their mean is known in closed form.
+    /// Random fates drawn per body for the last word on the most promising programme; null where all were
+    /// summed, or their mean is known in closed form.
     pub fates: Option<usize>,
-    /// Standard error of the best programme's gain in ln R0, from bodies and fates.
+    /// Standard error of the best programme's gain in ln R0, from bodies and fates. Where the generalist
+    /// stands and this is not 0, some programme looked better, but not by more than four of these.
     pub gain_error: Option<f64>,
+    /// Whether it is so.
+    #[serde(skip)]
+    pub undecided: bool,
 }
 
 /// The generalist optimum.
@@ -273,6 +278,7 @@ fn sampling_part(sample: &Sample, best: &BestProgramme) -> SamplingPart {
         maturing_share: sample.maturing,
         fates: if best.gain.draws_fates { sample.fates } else { None },
         gain_error: finite(best.gain.standard_error),
+        undecided: best.gain.is_undecided(),
     }
 }
 

@@ -16,7 +16,7 @@ pub struct BestProgramme {
     pub r0: f64,
     /// Its bodies.
     pub outcome: Outcome,
-    /// What it gains on the generalist.
+    /// What it gains on the generalist; where it is the generalist, how well that is known.
     pub gain: Gain,
 }
 
@@ -71,25 +71,22 @@ impl Model {
             Some(top) if top.value > bar => space.programme(&top.at),
             _ => generalist.programme(),
         };
-        let judged = self.judged(programme, generalist);
-        if self.placed.is_some() && !judged.gain.exceeds(ROUNDING) {
-            return self.judged(generalist.programme(), generalist);
-        }
-        judged
-    }
-
-    /// What a programme leaves, builds and gains.
-    fn judged(&self, programme: Programme, generalist: &Generalist) -> BestProgramme {
-        let outcome = self.outcome(&programme);
-        let (r0, gain) = if let Some(placed) = &self.placed {
-            let judgement = self.judge(placed, &programme, &generalist.programme());
-            (judgement.r0, judgement.gain)
-        } else {
+        let Some(placed) = &self.placed else {
             let r0 = self.expected_propagules(&programme);
             let ln_r0 = libm::log(r0) - libm::log(generalist.r0);
-            (r0, Gain { ln_r0, standard_error: 0.0, draws_fates: false })
+            let gain = Gain { ln_r0, standard_error: 0.0, draws_fates: false };
+            return self.built_by(programme, r0, gain);
         };
-        BestProgramme { programme, r0, outcome, gain }
+        let judged = self.judge(placed, &programme, &generalist.programme());
+        if judged.gain.exceeds(ROUNDING) {
+            self.built_by(programme, judged.r0, judged.gain)
+        } else {
+            self.built_by(generalist.programme(), generalist.r0, judged.no_gain)
+        }
+    }
+
+    fn built_by(&self, programme: Programme, r0: f64, gain: Gain) -> BestProgramme {
+        BestProgramme { programme, r0, outcome: self.outcome(&programme), gain }
     }
 }
 

@@ -14,7 +14,7 @@ mod spread;
 
 use std::sync::Arc;
 
-pub use gain::Gain;
+pub use gain::{Gain, SURE};
 pub use spread::Spread;
 
 use self::luck::Luck;
@@ -36,6 +36,8 @@ pub struct PlacedCell {
 pub struct PlacedBody {
     /// Its cells.
     pub cells: Vec<PlacedCell>,
+    /// How many of its cells touch another; where cells are replaced, only these are.
+    pub cells_in_contact: usize,
     /// Hours from propagule to adult at full income; none: it never matured.
     pub growth_h: Option<f64>,
     /// How its cells share the viability task's product, in the same order; none: all of it is
@@ -48,9 +50,11 @@ pub struct PlacedBody {
 pub struct PlacedBodies {
     /// Bodies with their probabilities.
     sited: Vec<Sited>,
+    /// Probability of a body without cells, which is none of those.
+    empty: f64,
     /// How many bodies were drawn; 1 where the probabilities are exact.
     drawn: f64,
-    /// Rate at which an adult's cells are replaced (tau), 1/h per cell.
+    /// Rate at which an adult's cells that touch another are replaced (tau), 1/h per cell.
     turnover_per_h: f64,
 }
 
@@ -68,6 +72,7 @@ struct Body {
     kinds: Vec<SitedKind>,
     /// Entry of `kinds` of each cell.
     kind_of: Vec<u32>,
+    cells_in_contact: usize,
     growth_h: Option<f64>,
     spread: Option<Arc<dyn Spread>>,
 }
@@ -85,7 +90,8 @@ struct SitedKind {
 impl PlacedBodies {
     /// Bodies in these numbers: how many of a sample are like each (they sum to the sample's size),
     /// or their exact probabilities (they sum to 1). Bodies in no number are left out; one without
-    /// cells counts, and leaves nothing. `turnover_per_h` is the rate at which each cell of an adult is replaced, 0 or more.
+    /// cells counts, and leaves nothing. `turnover_per_h` is the rate at which each cell of an adult that touches
+    /// another is replaced, 0 or more.
     #[must_use]
     pub fn new(bodies: impl IntoIterator<Item = (f64, PlacedBody)>, turnover_per_h: f64) -> Self {
         let bodies: Vec<(f64, PlacedBody)> =
@@ -95,9 +101,11 @@ impl PlacedBodies {
             let luck = Arc::new(Luck::for_searching(body.cells.len(), rank as u64));
             Sited { weight: number / drawn, body: Arc::new(Body::of(body)), luck }
         };
-        let alive = bodies.into_iter().filter(|(_, body)| !body.cells.is_empty());
-        let sited = alive.enumerate().map(site).collect();
-        Self { sited, drawn, turnover_per_h }
+        let (empty, alive): (Vec<_>, Vec<_>) =
+            bodies.into_iter().partition(|(_, body)| body.cells.is_empty());
+        let empty = empty.iter().map(|(number, _)| number / drawn).sum();
+        let sited = alive.into_iter().enumerate().map(site).collect();
+        Self { sited, empty, drawn, turnover_per_h }
     }
 
     /// Fewer bodies with fewer fates, for finding one's way: the first that matured.
@@ -112,7 +120,7 @@ impl PlacedBodies {
             sited.weight = weight;
             sited.luck = Arc::new(Luck::for_sketching(sited.body.cells(), rank as u64));
         }
-        Self { drawn: 1.0, sited, turnover_per_h: self.turnover_per_h }
+        Self { drawn: 1.0, sited, empty: 0.0, turnover_per_h: self.turnover_per_h }
     }
 
     /// Mean growth of the bodies that mature, h; `None` where none does.
@@ -159,7 +167,7 @@ pub struct Sample {
     pub fates: Option<usize>,
 }
 
-/// Deviation from the body's mean up to which a cue counts as not varying: rounding of a solver.
+/// Deviation up to which a cue counts as not varying, and an income as full: rounding of a solver.
 const ALIKE: f64 = 1e-9;
 /// Bodies that a sketch keeps, at most.
 const SKETCHED: usize = 2;
@@ -195,10 +203,16 @@ impl Body {
         }
         let growth_h = body.growth_h.filter(|hours| hours.is_finite() && *hours >= 0.0);
         let kinds = kinds.into_iter().flatten().collect();
-        Self { kinds, kind_of, growth_h, spread: body.spread }
+        let PlacedBody { cells_in_contact, spread, .. } = body;
+        Self { kinds, kind_of, cells_in_contact, growth_h, spread }
     }
 
     fn cells(&self) -> usize {
         self.kind_of.len()
+    }
+
+    /// Whether every cell earns what a fully fed one does.
+    fn is_fully_fed(&self) -> bool {
+        self.kinds.iter().all(|kind| (kind.income - 1.0).abs() <= ALIKE)
     }
 }

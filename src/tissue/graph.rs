@@ -70,6 +70,12 @@ impl BodyGraph {
         &self.contacts
     }
 
+    /// How many cells touch another.
+    #[must_use]
+    pub fn cells_in_contact(&self) -> usize {
+        self.contacts.iter().filter(|contacts| **contacts > 0).count()
+    }
+
     /// Touching cells of each cell, filled up with [`NOBODY`].
     pub(super) fn rows(&self) -> &[[u32; SITES_AROUND]] {
         &self.rows

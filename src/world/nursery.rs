@@ -51,6 +51,8 @@ pub struct SharedBody {
     pub development: Development,
     /// Mean income of the final body's cells relative to e0, before tax.
     pub mean_income: f64,
+    /// Cells of the final body that touch another: where cells are replaced, only these are.
+    pub cells_in_contact: usize,
     /// What incomes do to returns.
     pub factors: IncomeFactors,
 }
@@ -140,7 +142,8 @@ impl Developments {
         let incomes = &development.incomes;
         let mean_income = incomes.iter().sum::<f64>() / incomes.len().max(1) as f64;
         let factors = IncomeFactors::of(incomes, &self.settings.returns);
-        SharedBody { development, mean_income, factors }
+        let cells_in_contact = development.graph.cells_in_contact();
+        SharedBody { development, mean_income, cells_in_contact, factors }
     }
 }
 

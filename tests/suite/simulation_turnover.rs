@@ -217,6 +217,29 @@ fn labels_and_luck_come_to_rest_where_their_chains_do() {
     assert!((variance - 1.0).abs() < 4.5 * (2.0 / count).sqrt(), "{variance}");
 }
 
+/// A cell by itself has nobody to replace it: it pays nothing, as theory says, and leaves
+/// `(1 - z)^c / c_p / m` propagules.
+#[test]
+fn a_single_cell_pays_for_no_replacement() {
+    let mut settings = scenario(1, CueSet::EMPTY);
+    settings.budget.turnover_per_h = 10.0;
+    let z = 0.6_f64;
+    let programme = Programme::generalist((z / (1.0 - z)).ln());
+    let fecundity = (1.0 - z).powf(FECUNDITY);
+    let hazard = 0.001 + 0.002 / z.powf(VIABILITY);
+    let mut population = populated(&settings, programme, 1.0, 1);
+    for _ in 0..500 {
+        population.tick();
+    }
+    assert!(population.alive() > 0 && population.ledger().deaths > 50);
+    assert_eq!(population.ledger().replacements, 0);
+    for adult in population.adults() {
+        approx::assert_relative_eq!(adult.vitals.fecundity, fecundity, max_relative = 1e-6);
+    }
+    let theory = somadawn::study::prediction::model(&settings).expected_propagules(&programme);
+    approx::assert_relative_eq!(theory, fecundity / 4.0 / hazard, max_relative = 1e-12);
+}
+
 /// Without turnover nothing is replaced.
 #[test]
 fn nothing_is_replaced_where_there_is_no_turnover() {

@@ -207,6 +207,8 @@ fn chance_is_not_taken_for_a_gain() {
         let best = model.best_programme(&generalist);
         assert!(!best.outdoes(1e-6), "{best:?}");
         assert!(best.r0 <= generalist.r0 * (1.0 + 1e-9), "{best:?}");
+        // Either nothing looked better, or fates were drawn to see.
+        assert_eq!(best.gain.is_undecided(), best.gain.draws_fates, "{best:?}");
     }
     // Well above it, what is found better is so.
     let body = adult(earning(&[1.0; 12]), Some(Table::of_huddle(12, 30.0)));

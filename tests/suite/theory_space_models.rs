@@ -73,13 +73,14 @@ pub(crate) fn earning(incomes: &[f64]) -> Vec<PlacedCell> {
     incomes.iter().map(|income| PlacedCell { kind, income: *income }).collect()
 }
 
-/// A body that is adult at once.
+/// A body that is adult at once, whose cells all touch another if there are any others.
 pub(crate) fn adult(cells: Vec<PlacedCell>, spread: Option<Table>) -> PlacedBody {
     let spread = spread.map(|table| {
         let spread: Arc<dyn Spread> = Arc::new(table);
         spread
     });
-    PlacedBody { cells, growth_h: Some(0.0), spread }
+    let cells_in_contact = if cells.len() > 1 { cells.len() } else { 0 };
+    PlacedBody { cells, cells_in_contact, growth_h: Some(0.0), spread }
 }
 
 /// A life without growth or costs of that many cells.

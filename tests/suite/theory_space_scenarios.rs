@@ -6,7 +6,7 @@ use proptest::prelude::*;
 use somadawn::scenario::Settings;
 use somadawn::scenario::settings::{Nutrient, Plan, Support, Waste};
 use somadawn::study::prediction::{Prediction, model, predict};
-use somadawn::theory::{Cue, CueSet, Verdict};
+use somadawn::theory::{Cue, CueSet, Programme, Verdict};
 
 use crate::theory_models::{only, power};
 
@@ -102,6 +102,29 @@ fn where_food_is_scarce_inside_unequal_exponents_favour_position() {
     assert!(alike.cues[0].curvature.expect("a number") < 0.0);
     let sampling = alike.sampling.expect("bodies are grown");
     assert!(sampling.bodies >= 6 && sampling.maturing_share >= 1.0 && sampling.fates.is_none());
+}
+
+/// Fully fed cells that keep the share s of their incomes take `(1 - u) / (s - u)` times as long, however
+/// their divisions come: under a hazard as many times lower, a taxed propagule grows up as often as an
+/// untaxed one, and linear B and V each are s times theirs. Trees of 12 cells, costs of division varying,
+/// u = 0.2, s = 0.7, a cue that all cells read alike.
+#[test]
+fn a_tax_slows_fully_fed_bodies_alike() {
+    let mut settings = ponds(12, [1.0, 1.0], only(Cue::Exposure));
+    settings.body.plan = Plan::Tree;
+    settings.budget.division_cv = 0.4;
+    settings.budget.upkeep_eu_per_h = 0.2;
+    settings.traits.cost_per_unit = 0.1;
+    settings.life.juvenile_hazard_per_h = 0.02;
+    let untaxed = model(&settings);
+    let in_rounds = untaxed.life().growth_h(1.0).expect("saves");
+    assert!((untaxed.growth_h().expect("grows") / in_rounds - 1.0).abs() > 0.01);
+    let mut programme = Programme::generalist(0.3);
+    let expected = 0.49 * untaxed.expected_propagules(&programme);
+    settings.life.juvenile_hazard_per_h *= 0.5 / 0.8;
+    programme.responsiveness[Cue::Exposure.index()] = 3.0;
+    let found = model(&settings).expected_propagules(&programme);
+    assert_relative_eq!(found, expected, max_relative = 1e-12);
 }
 
 /// Where no body matures nothing is left, and what does not exist is null.

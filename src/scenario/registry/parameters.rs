@@ -205,7 +205,7 @@ pub(crate) static TURNOVER: Parameter<Real> = parameter!(
     "budget.turnover_per_h",
     "1/h",
     "Rate at which a cell of an adult dies and is replaced by a neighbour's division, whose cost \
-     the colony's germ budget pays",
+     the colony's germ budget pays; a cell that touches no other lives on and costs nothing",
     Real::from_to(0.0, 1e6),
     0.0
 );

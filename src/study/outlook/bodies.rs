@@ -41,6 +41,8 @@ pub(super) struct Bodies {
     pub(super) interior_share: f64,
     /// Mean income of a cell relative to a fully fed one's.
     pub(super) mean_income: f64,
+    /// Share of cells that touch another.
+    pub(super) contact_share: f64,
     /// Whether cells of one body earn differently.
     pub(super) incomes_vary: bool,
     /// Bodies grown; 0 where growth has nothing to say on incomes or size.
@@ -69,6 +71,7 @@ impl Bodies {
         Self {
             interior_share: compact_interior_share(cells),
             mean_income: 1.0,
+            contact_share: f64::from(u8::from(cells > 1)),
             incomes_vary: false,
             grown: 0,
             stunted: 0,
@@ -87,6 +90,7 @@ impl Bodies {
         Self {
             interior_share: mean(interior_share, looked_at),
             mean_income: mean(mean_income, looked_at),
+            contact_share: mean(contact_share, looked_at),
             incomes_vary: looked_at.iter().any(|body| incomes_vary(body)),
             grown: grown.len(),
             stunted: stunted.len(),
@@ -110,6 +114,10 @@ fn interior_share(body: &Development) -> f64 {
     let empty = body.graph.empty();
     let interior: f64 = empty.iter().map(|sites| f64::from(u8::from(*sites == 0))).sum();
     interior / empty.len().max(1) as f64
+}
+
+fn contact_share(body: &Development) -> f64 {
+    body.graph.cells_in_contact() as f64 / body.graph.cells().max(1) as f64
 }
 
 fn mean_income(body: &Development) -> f64 {

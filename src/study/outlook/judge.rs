@@ -116,8 +116,8 @@ impl Scene<'_> {
         short.then_some(Warning::HelpFallsShort { range_over_radius })
     }
 
-    /// Replacements cost `turnover * division cost` eu/h per cell; the germ budget is what cells at
-    /// the starting soma share keep of their mean income.
+    /// Replacements cost `turnover * division cost` eu/h per cell that touches another; the germ budget is
+    /// what cells at the starting soma share keep of their mean income.
     fn turnover_warning(&self) -> Option<Warning> {
         let Self { settings, selection, bodies, .. } = *self;
         let budget = &settings.budget;
@@ -125,7 +125,8 @@ impl Scene<'_> {
             Baseline::Optimum => selection.soma_share,
             Baseline::At(logit) => sigmoid(logit),
         };
-        let cost = budget.turnover_per_h * budget.division_cost_eu;
+        let replaced_per_h = budget.turnover_per_h * bodies.contact_share;
+        let cost = replaced_per_h * budget.division_cost_eu;
         let germ = budget.income_eu_per_h * bodies.mean_income * (1.0 - soma_share);
         let ruinous = cost > 0.0 && cost >= germ;
         ruinous.then(|| Warning::TurnoverTooCostly { share: cost / germ })

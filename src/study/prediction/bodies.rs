@@ -45,6 +45,7 @@ pub(super) fn placed_bodies(settings: &Settings) -> PlacedBodies {
 #[derive(PartialEq)]
 struct Arranged {
     cells: Vec<PlacedCell>,
+    cells_in_contact: usize,
     growth_h: Option<f64>,
     /// Who touches whom, where support is local.
     graph: Option<BodyGraph>,
@@ -74,8 +75,9 @@ impl Arranged {
             // Incomes are positive, so that their bits sort as they do.
             order.sort_unstable_by_key(|i| (cell(*i).kind, cell(*i).income.to_bits()));
         }
+        let cells_in_contact = graph.cells_in_contact();
         let graph = local.then(|| reordered(graph, &order));
-        Self { cells: order.into_iter().map(cell).collect(), growth_h, graph }
+        Self { cells: order.into_iter().map(cell).collect(), cells_in_contact, growth_h, graph }
     }
 
     fn placed(self, sharing: Option<Sharing>, solver: &Arc<Mutex<SteadySolver>>) -> PlacedBody {
@@ -83,7 +85,8 @@ impl Arranged {
             let reach: Arc<dyn Spread> = Arc::new(Reach::new(graph, sharing, Arc::clone(solver)));
             reach
         });
-        PlacedBody { cells: self.cells, growth_h: self.growth_h, spread }
+        let Self { cells, cells_in_contact, growth_h, .. } = self;
+        PlacedBody { cells, cells_in_contact, growth_h, spread }
     }
 }
 

@@ -7,9 +7,13 @@ use crate::theory::jet::{Jet, Scalar};
 use crate::theory::reaction_norm::{Cue, Programme};
 
 /// Standard errors by which a gain must exceed 0 to count.
-const SURE: f64 = 4.0;
+pub const SURE: f64 = 4.0;
 
 /// How much more a programme leaves than the generalist.
+///
+/// Where no programme is known to leave more the generalist stands, and its gain is 0. The standard error
+/// and whether fates were drawn are then those of the most promising programme: what that one may gain
+/// unnoticed.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Gain {
     /// Difference in ln R0.
@@ -21,6 +25,12 @@ pub struct Gain {
 }
 
 impl Gain {
+    /// Whether some programme looked better than the generalist, but chance may explain that.
+    #[must_use]
+    pub fn is_undecided(&self) -> bool {
+        self.ln_r0 <= 0.0 && self.standard_error > 0.0
+    }
+
     /// Whether it exceeds `margin`, and chance.
     #[must_use]
     pub fn exceeds(&self, margin: f64) -> bool {
@@ -36,6 +46,8 @@ pub(in crate::theory) struct Judgement {
     pub(in crate::theory) r0: f64,
     /// What it gains.
     pub(in crate::theory) gain: Gain,
+    /// The same where chance may explain that gain: none.
+    pub(in crate::theory) no_gain: Gain,
 }
 
 /// Differences between programme and generalist in one body.
@@ -98,8 +110,10 @@ impl Model {
             .collect();
         let mean: f64 = differences.iter().map(|d| d.weight * d.mean).sum();
         let within: f64 = differences.iter().map(|d| d.weight * d.weight * d.error_square).sum();
-        let spread: f64 =
-            differences.iter().map(|d| d.weight * (d.mean - mean) * (d.mean - mean)).sum();
+        let around_mean = |weight: f64, difference: f64| weight * (difference - mean).powi(2);
+        let spread: f64 = differences.iter().map(|d| around_mean(d.weight, d.mean)).sum();
+        // Bodies without cells differ by nothing, as those do that never mature.
+        let spread = spread + around_mean(bodies.empty, 0.0);
         let between = if bodies.drawn >= 2.0 { spread / (bodies.drawn - 1.0) } else { 0.0 };
         let alike = self.expected_propagules(generalist);
         let r0 = (alike + mean).max(0.0);
@@ -107,7 +121,8 @@ impl Model {
         let ln_r0 = libm::log(r0) - libm::log(alike);
         let draws_fates = differences.iter().any(|difference| difference.draws_fates);
         let gain = Gain { ln_r0, standard_error: error / r0, draws_fates };
-        Judgement { r0, gain }
+        let no_gain = Gain { ln_r0: 0.0, standard_error: error / alike, draws_fates };
+        Judgement { r0, gain, no_gain }
     }
 
     fn difference(

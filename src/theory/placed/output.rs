@@ -81,26 +81,33 @@ impl Model {
         bodies.sited.iter().map(share).collect()
     }
 
-    /// Probability that a propagule becomes this body, `exp(-m_j T)`.
-    ///
-    /// The time T of growth under a tax follows from that without: cells that earn the share f of e0 on
-    /// average save `f e0 - u`, taxed ones `relative f e0 - u`, and T is the inverse ratio times as
-    /// long. f follows from T and the cost of divisions, as if they came in rounds; that is exact where
-    /// all cells earn alike, or there is no upkeep.
+    /// Probability that a propagule becomes this body, `exp(-m_j T)`; 0 if it never matures.
     pub(super) fn survival<S: Scalar>(&self, body: &Body, relative: S) -> S {
-        let Some(full_h) = body.growth_h else {
-            return S::constant(0.0);
-        };
+        match self.taxed_growth_h(body, relative) {
+            Some(hours) => (hours * -self.life.juvenile_hazard_per_h).exp(),
+            None => S::constant(0.0),
+        }
+    }
+
+    /// Hours of growth (T) where cells keep the share `relative` of their incomes; `None`: never adult.
+    ///
+    /// Without the tax a cell that earns the share f of e0 saves `f e0 - u`, with it `relative f e0 - u`,
+    /// and T is the inverse ratio times as long. In a body whose cells are all fully fed f is 1 and that
+    /// is exact, however divisions come. Elsewhere f is what cells earn on average if T is that of
+    /// divisions in rounds: exact where divisions do come in rounds of cells that earn alike, or there is
+    /// no upkeep; otherwise an estimate. Where propagules divide no more, T is how long they wait for
+    /// hungry cells to die. Whoever starves does so with and without the tax, and as soon.
+    fn taxed_growth_h<S: Scalar>(&self, body: &Body, relative: S) -> Option<S> {
+        let full_h = body.growth_h?;
         let spent = self.life.rounds_cost_eu();
         if full_h <= 0.0 || spent == 0.0 {
-            return S::constant(1.0);
+            return Some(S::constant(full_h));
         }
-        let earned = spent / full_h + self.life.upkeep_eu_per_h;
-        let saved = relative * earned - S::constant(self.life.upkeep_eu_per_h);
-        if saved.value() <= 0.0 {
-            return S::constant(0.0);
-        }
-        (S::constant(-self.life.juvenile_hazard_per_h * spent) / saved).exp()
+        let upkeep = self.life.upkeep_eu_per_h;
+        let saved_untaxed =
+            if body.is_fully_fed() { self.life.income_eu_per_h - upkeep } else { spent / full_h };
+        let saved = relative * (saved_untaxed + upkeep) - S::constant(upkeep);
+        (saved.value() > 0.0).then(|| S::constant(saved_untaxed) / saved * full_h)
     }
 
     /// `E[B V / (m_ext V + m0)]` over the random fates of a body's cells, h.
@@ -252,10 +259,11 @@ impl Model {
         }
     }
 
-    /// What an adult's replacements cost it, over e0: `tau n c_div / e0`.
+    /// What an adult's replacements cost it, over e0: `tau n_c c_div / e0`, `n_c` being its cells that
+    /// touch another. Nobody replaces the others, so that a body of one cell pays nothing.
     pub(super) fn replacement_cost(&self, bodies: &PlacedBodies, body: &Body) -> f64 {
         let per_cell = bodies.turnover_per_h * self.life.division_cost_eu;
-        per_cell * body.cells() as f64 / self.life.income_eu_per_h
+        per_cell * body.cells_in_contact as f64 / self.life.income_eu_per_h
     }
 
     /// Viability of a body of generalists.

@@ -3,7 +3,7 @@
 //! Each cell of an adult dies at the rate tau; a touching cell, drawn at random, divides into the gap at
 //! once, so that body and fields stay as they are. The mother's label becomes -1, the daughter's +1, and
 //! the daughter draws its noise anew; every cell then follows its cues, and V and B what all cells do.
-//! A cell that touches no other has nobody to replace it and lives on.
+//! A cell that touches no other has nobody to replace it: it lives on and costs nothing.
 
 mod turn;
 
@@ -30,6 +30,7 @@ use crate::world::resources::{
 pub fn charge_replacements(
     rules: Res<Rules>,
     maturing: Res<Maturing>,
+    bodies: Res<SharedBodies>,
     mut cells: Query<(&Exposed, &Budget, &mut Output)>,
     mut colonies: Query<&CellCount>,
 ) {
@@ -41,17 +42,28 @@ pub fn charge_replacements(
     let counts = only_table(colonies.contiguous_iter_mut());
     for &site in &maturing.0 {
         let here = site as usize;
+        let Some(body) = bodies.of(here) else { continue };
         let rows = counts[here].rows(here, rules.0.body.adult_cells);
-        charge(&rules, &budgets[rows.clone()], &exposed[rows.clone()], &mut outputs[rows]);
+        charge(&rules, body, &budgets[rows.clone()], &exposed[rows.clone()], &mut outputs[rows]);
     }
 }
 
-/// Scales germ budgets by `max(0, 1 - tau n c_div / sum_j g_j)`: on average the colony pays its
-/// replacements from them. Budgets are kept as they were split; what they yield for fecundity is set.
-fn charge(rules: &Rules, budgets: &[Budget], exposed: &[Exposed], outputs: &mut [Output]) {
+/// Scales germ budgets by `max(0, 1 - tau n_c c_div / sum_j g_j)`, `n_c` being the cells that touch
+/// another: on average the colony pays its replacements from them. Budgets are kept as they were split;
+/// what they yield for fecundity is set.
+fn charge(
+    rules: &Rules,
+    body: &SharedBody,
+    budgets: &[Budget],
+    exposed: &[Exposed],
+    outputs: &mut [Output],
+) {
     let budget = &rules.0.budget;
     let germ: f64 = budgets.iter().map(|cell| f64::from(cell.germ_eu_per_h)).sum();
-    let cost = budget.turnover_per_h * budgets.len() as f64 * budget.division_cost_eu;
+    let cost = budget.turnover_per_h * body.cells_in_contact as f64 * budget.division_cost_eu;
+    if cost <= 0.0 {
+        return;
+    }
     let left = if germ > cost { 1.0 - cost / germ } else { 0.0 };
     let fecundity = &rules.0.returns.fecundity;
     if let ReturnCurve::Power { exponent } = fecundity.curve {
@@ -261,7 +273,8 @@ impl Adults<'_> {
         };
         colony.split(&Heeded::by(self.rules), Some(body), cells, &mut memory.readings);
         let outputs = &mut self.outputs[rows.clone()];
-        charge(self.rules, &self.budgets[rows.clone()], &self.exposed[rows.clone()], outputs);
+        let (budgets, exposed) = (&self.budgets[rows.clone()], &self.exposed[rows.clone()]);
+        charge(self.rules, body, budgets, exposed, outputs);
         let achieved = match self.rules.0.sharing() {
             None => pooled(outputs),
             Some(sharing) => {
@@ -295,3 +308,6 @@ impl Adults<'_> {
         left
     }
 }
+
+#[cfg(test)]
+mod tests;
