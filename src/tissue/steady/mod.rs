@@ -36,7 +36,7 @@ struct Precision {
 
 impl Precision {
     const FULL: Self = Self { reacting: 1e-11, support: 2e-6 };
-    const WORKING: Self = Self { reacting: 1e-5, support: 1e-3 };
+    const WORKING: Self = Self { reacting: 1e-5, support: 1e-4 };
 }
 
 impl Default for Precision {
@@ -62,8 +62,8 @@ pub struct SteadySolver {
 }
 
 impl SteadySolver {
-    /// A solver for work in which a field is one of thousands: support to within 1e-3 of each cell's own
-    /// value (as a rule 1e-4), which leaves viability right to 2e-5, nutrient and waste to about 1e-4.
+    /// A solver for work in which a field is one of thousands: support to within 1e-4 of each cell's own
+    /// value, and so viability; nutrient and waste to about 1e-4.
     #[must_use]
     pub fn working() -> Self {
         Self { precision: Precision::WORKING, ..Self::default() }
