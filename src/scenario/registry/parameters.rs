@@ -205,8 +205,9 @@ pub(crate) static TURNOVER: Parameter<Real> = parameter!(
     "budget.turnover_per_h",
     "1/h",
     "Rate at which a cell of an adult dies and is replaced by a neighbour's division, whose cost \
-     the colony's germ budget pays",
-    Real::from_to(0.0, 1e6),
+     the colony's germ budget pays; at 10 a cell lives for six minutes, and a run takes time for \
+     every replacement",
+    Real::from_to(0.0, 10.0),
     0.0
 );
 

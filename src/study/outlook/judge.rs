@@ -87,11 +87,11 @@ impl Scene<'_> {
         if body.cells == 1 {
             return Some(Sameness::OneCell);
         }
+        let grows = settings.life.propagule_cells < body.cells;
+        let divides = grows || settings.budget.turnover_per_h > 0.0;
         match cue {
             Cue::Exposure if body.interior_share <= 0.0 => Some(Sameness::AllExposed),
-            Cue::Lineage if settings.life.propagule_cells == body.cells => {
-                Some(Sameness::NoDivision)
-            }
+            Cue::Lineage if !divides => Some(Sameness::NoDivision),
             Cue::Income if !settings.fields().act() => Some(Sameness::FullyFed),
             Cue::Income if !bodies.incomes_vary => Some(Sameness::EqualIncomes),
             _ => None,

@@ -124,7 +124,7 @@ impl Sameness {
         match self {
             Self::OneCell => "a body is one cell",
             Self::AllExposed => "every cell lies at the surface",
-            Self::NoDivision => "propagules are adult at once, so no cell divides",
+            Self::NoDivision => "propagules are adult at once and no cell is replaced, so none divides",
             Self::FullyFed => "every cell is fully fed",
             Self::EqualIncomes => "every cell's place is as good as any other's",
         }
