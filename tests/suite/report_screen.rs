@@ -24,12 +24,12 @@ fn rising(replicate: u32, end: u32, top: f64) -> Vec<CensusRow> {
 fn rows() -> Vec<ReplicateRow> {
     let mut rows: Vec<_> = (0..6u32).map(|k| onset(k, f64::from(400 + 50 * k))).collect();
     rows.extend([extinct(6, 250.0), censored(7)]);
-    rows.into_iter().map(|row| of_size(64.0, 0, row)).collect()
+    rows.iter().map(|row| of_size(64.0, 0, row)).collect()
 }
 
 /// The same row, but for the size of its bodies.
-fn of_size(adult_cells: f64, never_matured: u64, row: ReplicateRow) -> ReplicateRow {
-    ReplicateRow { adult_cells: Some(adult_cells), never_matured, ..row }
+fn of_size(adult_cells: f64, never_matured: u64, row: &ReplicateRow) -> ReplicateRow {
+    ReplicateRow { adult_cells: Some(adult_cells), never_matured, ..row.clone() }
 }
 
 fn course() -> Vec<CensusRow> {
@@ -139,7 +139,7 @@ fn told_of_size(rows: &[ReplicateRow]) -> Vec<String> {
 #[test]
 fn bodies_short_of_their_size_are_told() {
     let told = |adult_cells, never_matured| {
-        let rows = [0, 1].map(|k| of_size(adult_cells, never_matured, censored(k)));
+        let rows = [0, 1].map(|k| of_size(adult_cells, never_matured, &censored(k)));
         told_of_size(&rows)
     };
     // Means of whole numbers differ from the size by rounding at most.
@@ -151,7 +151,7 @@ fn bodies_short_of_their_size_are_told() {
     assert_eq!(told(63.999, 0), [size("63.999")]);
     assert_eq!(told(64.0, 617), [stopped]);
     assert_eq!(told(60.5, 617), [size("60.5"), stopped.to_owned()]);
-    let lone = told_of_size(&[of_size(64.0, 1, censored(0))]);
+    let lone = told_of_size(&[of_size(64.0, 1, &censored(0))]);
     assert_eq!(lone, ["Never matured   1 colony settled whose growth stops short of adult size"]);
     // Nobody was adult at the end.
     let none = ReplicateRow { adult_cells: None, never_matured: 0, ..censored(0) };
