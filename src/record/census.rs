@@ -47,7 +47,8 @@ pub struct CensusRow {
     pub trait_variance: [f64; TRAITS.len()],
     /// Mean number of living cells of adult colonies; `None` without adults.
     pub adult_cells: Option<f64>,
-    /// Colonies that stopped growing short of adult size, since the start.
+    /// Colonies that settled since the start and whose growth stops short of adult size, some of
+    /// which may still be growing.
     pub never_matured: u64,
     /// Relatedness of living colonies 1 to 4 sites apart on a torus; `None` in a mixed habitat, where
     /// all colonies carry the same line, or where no such pair lives.

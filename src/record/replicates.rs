@@ -51,7 +51,8 @@ pub struct ReplicateRow {
     pub mean_fitness: Option<f64>,
     /// Mean number of living cells of those adults.
     pub adult_cells: Option<f64>,
-    /// Colonies that stopped growing short of adult size, since the start.
+    /// Colonies that settled since the start and whose growth stops short of adult size, some of
+    /// which may still be growing.
     pub never_matured: u64,
 }
 

@@ -20,7 +20,7 @@ pub struct Summary {
     pub onset: OnsetSummary,
     /// Replicates that died out.
     pub extinct: usize,
-    /// Colonies that stopped growing short of adult size, over all replicates.
+    /// Colonies that settled and whose growth stops short of adult size, over all replicates.
     pub never_matured: u64,
     /// Where the replicates that did not die out ended.
     #[serde(rename = "final")]

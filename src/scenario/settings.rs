@@ -5,6 +5,9 @@ pub use crate::tissue::Plan;
 use crate::tissue::fields::{self, bond_conductance};
 use crate::tissue::{Fields, GrowthRules, Sharing};
 
+/// Grace of a hungry cell that counts as for ever, h.
+const FOR_EVER_H: f64 = 1e6;
+
 /// Everything a scenario states, every default spelled out.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Settings {
@@ -76,6 +79,7 @@ impl Settings {
     /// All that decides how a body grows.
     #[must_use]
     pub fn growth_rules(&self) -> GrowthRules {
+        let grace_h = self.budget.starvation_h;
         GrowthRules {
             plan: self.body.plan,
             propagule_cells: self.life.propagule_cells,
@@ -85,7 +89,7 @@ impl Settings {
             upkeep_eu_per_h: self.budget.upkeep_eu_per_h,
             division_cost_eu: self.budget.division_cost_eu,
             division_cv: self.budget.division_cv,
-            starvation_h: self.budget.starvation_h,
+            starvation_h: if grace_h >= FOR_EVER_H { f64::INFINITY } else { grace_h },
         }
     }
 

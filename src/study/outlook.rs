@@ -60,15 +60,16 @@ impl Outlook {
         let transport = TransportOutlook::of(settings, &bodies, &body);
         let support = SupportOutlook::of(settings, &body);
         let Selection { growth_h, generation_h, .. } = *selection;
+        let time = TimeOutlook { growth_h, generation_h };
         let scene = Scene { settings, selection, bodies: &bodies, body: &body };
         let warnings = scene.warnings(transport.as_ref(), support.as_ref());
         Self {
             title: settings.title.clone(),
             transport,
             support,
-            time: TimeOutlook { growth_h, generation_h },
             mutations_per_generation: mutations_per_generation(settings),
-            cost: Cost::of(settings, generation_h, threads),
+            cost: Cost::of(settings, &time, threads),
+            time,
             warnings: warnings.iter().map(Warning::advice).collect(),
             body,
         }

@@ -100,26 +100,9 @@ impl Developments {
     /// The body of a colony whose cells keep `income_share` of their income (1: untaxed), and the
     /// hours of its life per hour of that development.
     pub fn draw(&mut self, income_share: f64, rng: &mut impl Rng) -> (Arc<SharedBody>, f64) {
-        match self.slowness(income_share) {
+        match slowness(&self.settings, income_share) {
             Some(slowness) => (self.shared(rng), slowness),
             None => (Arc::new(self.grow(income_share, rng)), 1.0),
-        }
-    }
-
-    /// Hours that growth under the tax takes per hour without it, where that is the same for all
-    /// cells; none where the tax decides who starves.
-    fn slowness(&self, income_share: f64) -> Option<f64> {
-        let budget = &self.settings.budget;
-        let upkeep = budget.upkeep_eu_per_h / budget.income_eu_per_h;
-        let taxed = income_share < 1.0;
-        if !taxed {
-            Some(1.0)
-        } else if upkeep == 0.0 && income_share > 0.0 {
-            Some(1.0 / income_share)
-        } else if !self.settings.fields().act() && income_share > upkeep {
-            Some((1.0 - upkeep) / (income_share - upkeep))
-        } else {
-            None
         }
     }
 
@@ -144,6 +127,24 @@ impl Developments {
         let factors = IncomeFactors::of(incomes, &self.settings.returns);
         let cells_in_contact = development.graph.cells_in_contact();
         SharedBody { development, mean_income, cells_in_contact, factors }
+    }
+}
+
+/// Hours that growth under the tax takes per hour without it, where that is the same for all
+/// cells; none where the tax decides who starves, so that developments cannot be shared.
+#[must_use]
+pub fn slowness(settings: &Settings, income_share: f64) -> Option<f64> {
+    let budget = &settings.budget;
+    let upkeep = budget.upkeep_eu_per_h / budget.income_eu_per_h;
+    let taxed = income_share < 1.0;
+    if !taxed {
+        Some(1.0)
+    } else if upkeep == 0.0 && income_share > 0.0 {
+        Some(1.0 / income_share)
+    } else if !settings.fields().act() && income_share > upkeep {
+        Some((1.0 - upkeep) / (income_share - upkeep))
+    } else {
+        None
     }
 }
 

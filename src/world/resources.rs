@@ -220,7 +220,7 @@ pub struct Ledger {
     pub deaths: u64,
     /// Cells of adults that were replaced.
     pub replacements: u64,
-    /// Colonies that have stopped growing short of adult size, counted when they settle.
+    /// Colonies that settled and whose growth stops short of adult size.
     pub never_matured: u64,
     /// Propagules released over their whole life by colonies that died.
     pub lifetime_propagules: u64,

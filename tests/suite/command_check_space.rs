@@ -173,6 +173,7 @@ fn each_warning_of_space_at_its_limit() {
     let exposure = "traits.cues=[\"exposure\"]";
     let income = "traits.cues=[\"income\"]";
     let noise = "traits.cues=[\"noise\"]";
+    let lineage = "traits.cues=[\"lineage\"]";
     let small = "body.adult_cells=64";
     let torus = "habitat.layout=torus";
     let hungry = |setting: &'static str| [&HUNGRY[..], &[small, setting]].concat();
@@ -205,6 +206,11 @@ fn each_warning_of_space_at_its_limit() {
             vec!["body.plan=chain", "body.adult_cells=3", income, NUTRIENT],
         ),
         ("cue-cannot-vary", vec!["body.adult_cells=1", noise], vec!["body.adult_cells=2", noise]),
+        (
+            "cue-cannot-vary",
+            vec![small, "life.propagule_cells=64", lineage],
+            vec![small, "life.propagule_cells=64", lineage, "budget.turnover_per_h=0.001"],
+        ),
         ("never-matures", hungry("nutrient.exchange=0.1"), hungry("nutrient.exchange=1")),
         // Radius of 64 sites: 2.2106 diameters, a quarter of it 0.5527.
         (
@@ -241,6 +247,54 @@ fn each_warning_of_space_at_its_limit() {
         assert!(named(&given), "{name} is not given with {given:?}: {:?}", warnings(&given));
         assert!(!named(&not_given), "{name} is given with {not_given:?}");
     }
+}
+
+/// What a warning says, if it is given.
+fn told(name: &str, settings: &[&str]) -> Option<String> {
+    let document = check(settings);
+    let given = document["warnings"].as_array().expect("a list").iter();
+    let text = |warning: &Value| warning["text"].as_str().expect("a text").to_owned();
+    given.filter(|warning| warning["name"] == name).map(text).next()
+}
+
+/// Sizes at which single bodies stop differ where divisions are not in step; a shell of 64 cells is fed,
+/// but the compact body as which it grows is not.
+#[test]
+fn bodies_that_starve_only_now_and_then_are_told_of() {
+    let small = "body.adult_cells=64";
+    let with = |settings: &[&'static str]| {
+        [&HUNGRY[..], &[small, "nutrient.uptake_fmol_per_h=600"], settings].concat()
+    };
+    let uneven = |exchange| told("never-matures", &with(&["budget.division_cv=0.2", exchange]));
+    let some = uneven("nutrient.exchange=0.2").expect("a warning");
+    assert!(some.contains(" of 8 bodies stopped growing at about "), "{some}");
+    assert_eq!(uneven("nutrient.exchange=0.3"), None);
+    let all = uneven("nutrient.exchange=0.1").expect("a warning");
+    assert!(all.starts_with("none of 8 bodies reached 64 cells"), "{all}");
+
+    let shell = |exchange| told("body-starves", &with(&["body.plan=shell", exchange]));
+    let growing = shell("nutrient.exchange=0.3").expect("a warning");
+    assert!(growing.starts_with("an adult body is fed, but 8 of 8 lost cells"), "{growing}");
+    assert!(growing.contains("a shell grows as a compact body"), "{growing}");
+    assert_eq!(shell("nutrient.exchange=1"), None);
+    let adult = shell("nutrient.exchange=0.2").expect("a warning");
+    assert!(adult.starts_with("bodies of 64 cells are asked for"), "{adult}");
+}
+
+/// Replacements cost 8 tau per cell and hour, of half an eu.
+#[test]
+fn ruinous_turnover_is_told_in_readable_numbers() {
+    let turnover = |rate| {
+        let settings = ["traits.baseline=0", "body.adult_cells=64", rate];
+        told("turnover-too-costly", &settings).expect("a warning")
+    };
+    let dear = turnover("budget.turnover_per_h=6.2");
+    assert!(dear.starts_with("replacing dead cells costs 99.20 times what"), "{dear}");
+    let dearest = turnover("budget.turnover_per_h=10");
+    assert!(
+        dearest.starts_with("replacing dead cells costs more than 100 times what"),
+        "{dearest}"
+    );
 }
 
 #[test]

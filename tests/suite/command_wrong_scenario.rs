@@ -173,6 +173,7 @@ fn space_out_of_range() {
         ("[waste]\ntoxic_mM = 0.0", "`waste.toxic_mM` = 0.0 is out of range"),
         ("[waste]\nexchange = -1", "`waste.exchange` = -1 is out of range"),
         ("[budget]\nstarvation_h = -1", "`budget.starvation_h` = -1 is out of range"),
+        ("[budget]\nturnover_per_h = 10.1", "`budget.turnover_per_h` = 10.1 is out of range"),
         ("[budget]\nturnover_per_h = nan", "`budget.turnover_per_h` = nan is not a finite number"),
     ] {
         refuses(text, &[saying, "[pond.toml:3:"]);

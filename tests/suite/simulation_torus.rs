@@ -1,4 +1,4 @@
-//! A torus on which propagules land anywhere is a mixed habitat: drift, fixation, parental age; and runs on a
+//! A torus on which propagules land anywhere, by a kernel or without one, is a mixed habitat: drift, fixation, parental age; and runs on a
 //! torus are the same whatever the threads.
 
 use statrs::distribution::{ChiSquared, ContinuousCDF};
@@ -20,14 +20,18 @@ pub(crate) fn torus(sites: usize, dispersal_sites: f64) -> Settings {
     settings
 }
 
-/// Wider than any torus here.
+/// Wider than any torus here: propagules land as in a mixed habitat.
 const ENDLESS: f64 = 1e6;
+
+/// Spread over the side at which sites' chances are alike to 1e-14, but propagules still land by the kernel
+/// (from 1.3 on they do as in a mixed habitat).
+const WIDEST: f64 = 1.29;
 
 /// `E[S^2] = (N - 1) Vm / 2` as in a mixed habitat (Moran's process with distinct parent and victim, see
 /// `simulation_drift`).
 #[test]
 fn a_neutral_trait_varies_as_in_a_mixed_habitat() {
-    let habitat = torus(16, ENDLESS);
+    let habitat = torus(16, 4.0 * WIDEST);
     let means = trials(211, size(80, 800), |seed| mean_variance(&habitat, 1.0, 40, seed));
     let n = habitat.habitat.sites as f64;
     let expected = (n - 1.0) / 2.0 / (1.0 - own_refills(n));
@@ -38,7 +42,7 @@ fn a_neutral_trait_varies_as_in_a_mixed_habitat() {
 /// on average.
 #[test]
 fn founders_take_over_as_in_a_mixed_habitat() {
-    let habitat = torus(9, ENDLESS);
+    let habitat = torus(9, 3.0 * WIDEST);
     let count = size(3_000, 30_000);
     let fixed = trials(212, count, |seed| last_line(&habitat, seed, |_| 0.0));
     let mut winners = [0_u32; 9];

@@ -51,6 +51,10 @@ pub(super) struct Bodies {
     pub(super) stunted: usize,
     /// Mean number of cells at which those stopped.
     pub(super) stunted_cells: f64,
+    /// Bodies of all that lost cells to hunger while they grew.
+    pub(super) starving: usize,
+    /// Mean number of cells that those lost.
+    pub(super) starved_cells: f64,
 }
 
 impl Bodies {
@@ -76,6 +80,8 @@ impl Bodies {
             grown: 0,
             stunted: 0,
             stunted_cells: 0.0,
+            starving: 0,
+            starved_cells: 0.0,
         }
     }
 
@@ -83,6 +89,7 @@ impl Bodies {
     fn summed_up(grown: &[Development]) -> Self {
         let (adult, stunted): (Vec<_>, Vec<_>) =
             grown.iter().partition(|body| matches!(body.ending, Ending::Adult(_)));
+        let starving: Vec<_> = grown.iter().filter(|body| body.starved > 0).collect();
         let looked_at = if adult.is_empty() { &stunted } else { &adult };
         let mean = |of: fn(&Development) -> f64, bodies: &[&Development]| {
             bodies.iter().map(|body| of(body)).sum::<f64>() / bodies.len().max(1) as f64
@@ -95,6 +102,8 @@ impl Bodies {
             grown: grown.len(),
             stunted: stunted.len(),
             stunted_cells: mean(|body| body.incomes.len() as f64, &stunted),
+            starving: starving.len(),
+            starved_cells: mean(|body| body.starved as f64, &starving),
         }
     }
 

@@ -87,11 +87,11 @@ impl Scene<'_> {
         if body.cells == 1 {
             return Some(Sameness::OneCell);
         }
+        let grows = settings.life.propagule_cells < body.cells;
+        let divides = grows || settings.budget.turnover_per_h > 0.0;
         match cue {
             Cue::Exposure if body.interior_share <= 0.0 => Some(Sameness::AllExposed),
-            Cue::Lineage if settings.life.propagule_cells == body.cells => {
-                Some(Sameness::NoDivision)
-            }
+            Cue::Lineage if !divides => Some(Sameness::NoDivision),
             Cue::Income if !settings.fields().act() => Some(Sameness::FullyFed),
             Cue::Income if !bodies.incomes_vary => Some(Sameness::EqualIncomes),
             _ => None,
@@ -99,15 +99,25 @@ impl Scene<'_> {
     }
 
     fn hunger_warning(&self, transport: &TransportOutlook) -> Option<Warning> {
-        let (cells, fed) = (self.body.cells, transport.largest_fed_cells?);
-        (cells > fed).then_some(Warning::BodyStarves { cells, fed })
+        let cells = self.body.cells;
+        match transport.largest_fed_cells {
+            Some(fed) if cells > fed => Some(Warning::BodyStarves { cells, fed }),
+            _ => self.growth_warning(),
+        }
+    }
+
+    /// Hunger of bodies that are fed once they are adult.
+    fn growth_warning(&self) -> Option<Warning> {
+        let Bodies { grown, starving, starved_cells, .. } = *self.bodies;
+        let plan = self.settings.body.plan;
+        let told = Warning::GrowthStarves { plan, grown, starving, starved_cells };
+        (starving > 0).then_some(told)
     }
 
     fn stunting_warning(&self) -> Option<Warning> {
         let Bodies { grown, stunted, stunted_cells, .. } = *self.bodies;
-        let cells = self.body.cells;
-        let all = grown > 0 && stunted == grown;
-        all.then_some(Warning::NeverMatures { cells, grown, stopped_at: stunted_cells })
+        let (cells, stopped_at) = (self.body.cells, stunted_cells);
+        (stunted > 0).then_some(Warning::NeverMatures { cells, grown, stunted, stopped_at })
     }
 
     fn reach_warning(&self, support: &SupportOutlook) -> Option<Warning> {

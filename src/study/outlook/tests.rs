@@ -75,6 +75,52 @@ fn supply_and_cost_are_products() {
     assert!(Outlook::of(&local, &selection(9.0, &[]), 2).cost.seconds > outlook.cost.seconds);
 }
 
+/// Adults live for 100 h of the generation of 148 h, so that 0.02 per h replaces each cell twice; half of
+/// the draws of luck come out as they were, and so does a quarter of the labels.
+#[test]
+fn replacements_are_births_that_take_time() {
+    let cost = |overrides: &[&str]| {
+        let overrides = [&["run.generations=100", "run.replicates=1"], overrides].concat();
+        Outlook::of(&settings(&overrides), &selection(9.0, &[]), 1).cost
+    };
+    let (still, grown) = (cost(&[]), 256.0 * 64.0 * 100.0);
+    let extra = |cues: &str, local: bool| {
+        let cues = format!("traits.cues=[{cues}]");
+        let with = if local { vec!["support.leak=0", &cues] } else { vec![cues.as_str()] };
+        let found = cost(&[&with[..], &["budget.turnover_per_h=0.02"]].concat());
+        assert_relative_eq!(found.cell_lives, 3.0 * grown);
+        (found.seconds - cost(&with).seconds) / (2.0 * grown)
+    };
+    assert_relative_eq!(still.cell_lives, grown);
+    assert_relative_eq!(extra("'exposure'", true), 1e-7, max_relative = 1e-9);
+    assert_relative_eq!(extra("'noise'", false), 1e-7 + 32.0 * 1e-8, max_relative = 1e-9);
+    let all = "'noise','lineage','exposure'";
+    assert_relative_eq!(extra(all, true), 1e-7 + 56.0 * 1.1e-7, max_relative = 1e-9);
+    // Where the generalist never dies or never grows up no generation passes, so nothing is added.
+    let endless = Selection { generation_h: f64::INFINITY, ..selection(9.0, &[]) };
+    let turning = settings(&["budget.turnover_per_h=0.02"]);
+    let never = Outlook::of(&turning, &endless, 1).cost;
+    assert_eq!(never, Outlook::of(&settings(&[]), &endless, 1).cost);
+}
+
+/// A tax on responsiveness decides who starves where upkeep must be met from what fields leave.
+#[test]
+fn developments_that_cannot_be_shared_take_time() {
+    let seconds = |overrides: &[&str]| {
+        let fed = ["run.generations=100", "nutrient.exchange=1"];
+        let settings = settings(&[&fed[..], overrides].concat());
+        let cost = Outlook::of(&settings, &selection(9.0, &[]), 1).cost;
+        cost.seconds / cost.cell_lives
+    };
+    let (tax, upkeep) = ("traits.cost_per_unit=0.01", "budget.upkeep_eu_per_h=0.1");
+    let shared = seconds(&[]);
+    assert!(shared < 1e-6, "{shared}");
+    assert_relative_eq!(seconds(&[tax]), shared);
+    assert_relative_eq!(seconds(&[upkeep]), shared);
+    assert_relative_eq!(seconds(&[tax, upkeep, "traits.cues=[]"]), shared);
+    assert_relative_eq!(seconds(&[tax, upkeep]), 5e-6);
+}
+
 #[test]
 fn warnings_name_what_will_disappoint() {
     let calm = settings(&["body.adult_cells=100000", "habitat.sites=256"]);

@@ -41,12 +41,25 @@ pub enum Warning {
         /// Cells of the largest body without a starved cell.
         fed: usize,
     },
+    /// Adult bodies are fed, but cells starve while they grow.
+    GrowthStarves {
+        /// How the body is built.
+        plan: Plan,
+        /// Bodies that were grown to see.
+        grown: usize,
+        /// Bodies of these that lost cells.
+        starving: usize,
+        /// Cells that those lost, in the mean.
+        starved_cells: f64,
+    },
     /// Bodies stop growing short of adult size.
     NeverMatures {
         /// Cells of an adult body.
         cells: usize,
         /// Bodies that were grown to see.
         grown: usize,
+        /// Bodies of these that stopped.
+        stunted: usize,
         /// Cells at which they stopped, in the mean.
         stopped_at: f64,
     },
@@ -124,7 +137,9 @@ impl Sameness {
         match self {
             Self::OneCell => "a body is one cell",
             Self::AllExposed => "every cell lies at the surface",
-            Self::NoDivision => "propagules are adult at once, so no cell divides",
+            Self::NoDivision => {
+                "propagules are adult at once and no cell is replaced, so none divides"
+            }
             Self::FullyFed => "every cell is fully fed",
             Self::EqualIncomes => "every cell's place is as good as any other's",
         }
@@ -166,7 +181,7 @@ impl Warning {
             Self::NoInteriorCell { .. } => "no-interior-cell",
             Self::CueCannotVary { .. } => "cue-cannot-vary",
             Self::SmallBody { .. } => "small-body",
-            Self::BodyStarves { .. } => "body-starves",
+            Self::BodyStarves { .. } | Self::GrowthStarves { .. } => "body-starves",
             Self::NeverMatures { .. } => "never-matures",
             Self::HelpFallsShort { .. } => "help-falls-short",
             Self::TurnoverTooCostly { .. } => "turnover-too-costly",
@@ -204,10 +219,14 @@ impl Warning {
                 "bodies of {cells} cells are asked for, but beyond {fed} some cells earn less \
                  than their upkeep and starve while the body grows"
             ),
-            Self::NeverMatures { cells, grown, stopped_at } => format!(
-                "none of {grown} bodies reached {cells} cells: they stopped growing at about \
-                 {stopped_at:.0}, so no colony is ever adult"
+            Self::GrowthStarves { plan, grown, starving, starved_cells } => format!(
+                "an adult body is fed, but {starving} of {grown} lost cells to hunger on the way \
+                 ({starved_cells:.1} in the mean){}",
+                if *plan == Plan::Shell { ", as a shell grows as a compact body" } else { "" }
             ),
+            Self::NeverMatures { cells, grown, stunted, stopped_at } => {
+                stunting_text(*cells, [*stunted, *grown], *stopped_at)
+            }
             Self::HelpFallsShort { range_over_radius } => format!(
                 "support reaches {range_over_radius:.2} of the body's radius: cells further than \
                  that from the nearest helper go without, and a body fails with its least \
@@ -216,7 +235,7 @@ impl Warning {
             Self::TurnoverTooCostly { share } => format!(
                 "replacing dead cells costs {} times what cells have for propagules at the \
                  start, so nothing is left for them",
-                if *share < 1e4 { format!("{share:.2}") } else { format!("{share:.1e}") }
+                if *share <= 100.0 { format!("{share:.2}") } else { "more than 100".to_owned() }
             ),
             Self::TorusKernel { dispersal_sites, side, home_share } => {
                 kernel_text(*dispersal_sites, *side, *home_share)
@@ -256,7 +275,7 @@ impl Warning {
             Self::SmallBody { .. } => {
                 "nothing, if such small bodies are meant; else raise body.adult_cells"
             }
-            Self::BodyStarves { .. } | Self::NeverMatures { .. } => {
+            Self::BodyStarves { .. } | Self::GrowthStarves { .. } | Self::NeverMatures { .. } => {
                 "lower body.adult_cells or budget.upkeep_eu_per_h, or feed the body better \
                  ([nutrient], [waste], body.plan)"
             }
@@ -299,6 +318,20 @@ const fn whose(plan: Plan) -> &'static str {
         Plan::Chain => "chain's",
         Plan::Tree => "tree's",
         Plan::Shell => "shell's",
+    }
+}
+
+fn stunting_text(cells: usize, [stunted, grown]: [usize; 2], stopped_at: f64) -> String {
+    if stunted == grown {
+        format!(
+            "none of {grown} bodies reached {cells} cells: they stopped growing at about \
+             {stopped_at:.0}, so no colony is ever adult"
+        )
+    } else {
+        format!(
+            "{stunted} of {grown} bodies stopped growing at about {stopped_at:.0} of {cells} cells: \
+             such colonies are never adult"
+        )
     }
 }
 
