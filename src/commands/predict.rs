@@ -6,6 +6,7 @@ use clap::Args;
 
 use super::output::{print, print_json};
 use super::{Common, Failure, ScenarioFile};
+use crate::scenario::settings::Layout;
 use crate::scenario::{Override, Settings, nearest};
 use crate::study::prediction::{
     CriticalQuery, Prediction, SamplingPart, predict, predict_with_critical,
@@ -57,7 +58,7 @@ pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure>
     if common.json {
         return print_json(&prediction);
     }
-    Ok(print(&render(&prediction))?)
+    Ok(print(&render(&prediction, &settings))?)
 }
 
 fn with_critical(
@@ -103,9 +104,9 @@ fn bracket(arguments: &Arguments, settings: &Settings) -> Result<Bracket, Failur
 }
 
 /// The prediction as a list to read.
-fn render(prediction: &Prediction) -> String {
+fn render(prediction: &Prediction, settings: &Settings) -> String {
     let mut text = format!("{}\n\n", prediction.title);
-    for (name, value) in rows(prediction) {
+    for (name, value) in rows(prediction).into_iter().chain(cautions(prediction, settings)) {
         // Writing to a string cannot fail.
         let _ = writeln!(text, "{name:<26} {value}");
     }
@@ -149,6 +150,21 @@ fn rows(prediction: &Prediction) -> Vec<(String, String)> {
         ]);
     }
     rows
+}
+
+/// What theory leaves out, and where its verdict means little.
+fn cautions(prediction: &Prediction, settings: &Settings) -> Vec<(String, String)> {
+    let mut cautions = Vec::new();
+    if prediction.generalist.r0.is_none_or(|r0| r0 <= 1.0) {
+        cautions.push("alike cells leave at most one propagule: they cannot persist");
+    }
+    if matches!(settings.habitat.layout, Layout::Torus { .. }) {
+        cautions.push("theory does not know that neighbours are kin (habitat.layout)");
+    }
+    if settings.budget.turnover_per_h > 0.0 {
+        cautions.push("theory keeps a body's fates for life (budget.turnover_per_h)");
+    }
+    cautions.into_iter().map(|text| ("caution".to_owned(), text.to_owned())).collect()
 }
 
 /// How many bodies and fates the numbers come from, and what that leaves uncertain.

@@ -22,6 +22,8 @@ pub struct Start {
 
 /// Ticks between two looks at whether the run is to stop: a few milliseconds of common scenarios.
 const TICKS_BETWEEN_QUESTIONS: u32 = 256;
+/// The same where bodies are worked out in space, and a tick can take long.
+const TICKS_BETWEEN_QUESTIONS_IN_SPACE: u32 = 4;
 
 /// A replicate under way.
 pub struct Replicate<'s> {
@@ -63,6 +65,11 @@ impl<'s> Replicate<'s> {
             return None;
         }
         let due = self.next_census_generation();
+        let pause = if self.settings.is_spatial() {
+            TICKS_BETWEEN_QUESTIONS_IN_SPACE
+        } else {
+            TICKS_BETWEEN_QUESTIONS
+        };
         for ticks in 1_u32.. {
             self.population.tick();
             let first = self.censuses.is_empty() && self.population.adults().next().is_some();
@@ -71,7 +78,7 @@ impl<'s> Replicate<'s> {
                 break;
             }
             // Asked last: a census that is due is never passed over, nor a replicate over without it.
-            if ticks.is_multiple_of(TICKS_BETWEEN_QUESTIONS) && stopped() {
+            if ticks.is_multiple_of(pause) && stopped() {
                 return None;
             }
         }

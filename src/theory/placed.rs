@@ -149,7 +149,8 @@ impl PlacedBodies {
     pub fn sample(&self) -> Sample {
         let cells = self.sited.iter().map(|sited| sited.body.cells()).max().unwrap_or(0);
         let maturing = self.sited.iter().filter(|sited| sited.body.growth_h.is_some());
-        let maturing: f64 = maturing.map(|sited| sited.weight).sum();
+        // A sum of nothing is -0.
+        let maturing = maturing.map(|sited| sited.weight).sum::<f64>() + 0.0;
         let fates = Luck::fates_judged(cells);
         #[expect(clippy::cast_sign_loss, reason = "a number of bodies")]
         Sample { bodies: self.drawn.round() as usize, maturing, fates }

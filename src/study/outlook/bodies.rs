@@ -92,7 +92,7 @@ impl Bodies {
         let starving: Vec<_> = grown.iter().filter(|body| body.starved > 0).collect();
         let looked_at = if adult.is_empty() { &stunted } else { &adult };
         let mean = |of: fn(&Development) -> f64, bodies: &[&Development]| {
-            bodies.iter().map(|body| of(body)).sum::<f64>() / bodies.len().max(1) as f64
+            (bodies.iter().map(|body| of(body)).sum::<f64>() + 0.0) / bodies.len().max(1) as f64
         };
         Self {
             interior_share: mean(interior_share, looked_at),
@@ -121,8 +121,9 @@ impl Bodies {
 
 fn interior_share(body: &Development) -> f64 {
     let empty = body.graph.empty();
-    let interior: f64 = empty.iter().map(|sites| f64::from(u8::from(*sites == 0))).sum();
-    interior / empty.len().max(1) as f64
+    let interior = empty.iter().map(|sites| f64::from(u8::from(*sites == 0))).sum::<f64>();
+    // A sum of nothing is -0.
+    (interior + 0.0) / empty.len().max(1) as f64
 }
 
 fn contact_share(body: &Development) -> f64 {

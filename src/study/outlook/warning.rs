@@ -8,6 +8,9 @@ use crate::tissue::Plan;
 /// Share of propagules above which most count as landing at home.
 pub(super) const MOSTLY: f64 = 0.8;
 
+/// Cells of the smallest compact body with an interior cell: a centre and its 12 neighbours.
+const LEAST_WITH_INTERIOR: usize = 13;
+
 /// Something that may disappoint.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Warning {
@@ -215,6 +218,9 @@ impl Warning {
                  small algae of 64 to 128 cells show it all the same",
                 if *plan == Plan::Chain { "long" } else { "across" }
             ),
+            Self::BodyStarves { fed: 0, .. } => {
+                "even a single cell earns less than its upkeep".to_owned()
+            }
             Self::BodyStarves { cells, fed } => format!(
                 "bodies of {cells} cells are asked for, but beyond {fed} some cells earn less \
                  than their upkeep and starve while the body grows"
@@ -267,6 +273,10 @@ impl Warning {
 
     const fn remedy(&self) -> &'static str {
         match self {
+            Self::NoInteriorCell { plan: Plan::Clump, cells } if *cells >= LEAST_WITH_INTERIOR => {
+                "cells that starved have left holes: feed the body better or lower \
+                 budget.upkeep_eu_per_h"
+            }
             Self::NoInteriorCell { plan: Plan::Clump, .. } => {
                 "raise body.adult_cells to 13 or more"
             }
@@ -295,7 +305,8 @@ impl Warning {
             }
             Self::GeneralistCannotPersist { .. } => {
                 "lower life.adult_hazard_per_h, life.juvenile_hazard_per_h or \
-                 life.propagule_cost_eu"
+                 life.propagule_cost_eu; in space, also see to food, budget.upkeep_eu_per_h, \
+                 support.leak and budget.turnover_per_h"
             }
             Self::DriftDominates { .. } => {
                 "raise habitat.sites or traits.mutation_sd, and read onsets with care"

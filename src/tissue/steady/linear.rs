@@ -3,8 +3,8 @@
 //!
 //! The matrix is symmetric, and positive definite wherever each part of the body has a cell whose
 //! diagonal exceeds its number of contacts. In compact bodies division by the diagonal is enough of a
-//! preconditioner; a system that has not settled after some iterations, such as support of long range
-//! in a thin body, gets an incomplete factorisation as well.
+//! preconditioner. Thin bodies, and a system that has not settled after some iterations, get an
+//! incomplete factorisation as well.
 
 use super::contacts::Contacts;
 use super::elimination::Elimination;
@@ -12,6 +12,8 @@ use crate::tissue::graph::BodyGraph;
 
 /// Iterations after which a system is taken for a hard one.
 const EASY: usize = 150;
+/// Contacts per cell up to which a body is thin: there elimination leaves next to nothing out.
+const THIN: usize = 3;
 /// Iterations after which a hard one is left as it is.
 const MOST: usize = 20_000;
 
@@ -43,7 +45,9 @@ impl Linear {
         self.image.resize(contacts.cells(), 0.0);
         self.inverse.clear();
         self.inverse.extend(self.diagonal.iter().map(|diagonal| diagonal.recip()));
-        self.iterate_easy(contacts, &mut settled)
+        let links: usize = graph.contacts().iter().map(|links| usize::from(*links)).sum();
+        let thin = links <= THIN * graph.cells();
+        (!thin && self.iterate_easy(contacts, &mut settled))
             || self.iterate_hard(graph, contacts, &mut settled)
     }
 

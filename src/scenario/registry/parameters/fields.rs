@@ -50,7 +50,8 @@ const DIFFUSIVITY: Real = Real::from_to(1e-3, 1e8);
 const EXCHANGE: Real = Real::from_to(1e-6, 1e3);
 
 const EXCHANGE_MEANING: &str = "Conductance between a cell and an empty neighbour site, relative \
-                                to that between touching cells; 1: well stirred up to the body";
+                                to that between touching cells; 1: well stirred up to the body, below: an \
+                                unstirred film, 2: stirred up to the cells themselves";
 
 /// How far support reaches.
 pub(crate) static SUPPORT: SupportParameters = SupportParameters {
