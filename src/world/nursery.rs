@@ -4,7 +4,7 @@
 //! is local, cells are replaced or the body is no clump, a development takes a field solve at every
 //! step of growth; what a body looks like then does not depend on its genotype, so colonies share
 //! developments. Each is a draw from the same distribution as a colony's own would be; a colony takes
-//! one of a few at random, and each is replaced by a new one after some [`SHARED_BY`] colonies.
+//! one of a few at random, and each is replaced by a new one after some 32 colonies.
 
 use std::sync::Arc;
 
