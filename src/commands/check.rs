@@ -6,7 +6,7 @@ use clap::Args;
 
 use super::output::{print, print_json};
 use super::{Common, Failure, ScenarioFile};
-use crate::study::outlook::{Outlook, Selection};
+use crate::study::outlook::{LARGEST_LOOKED_AT, Outlook, Selection, TransportOutlook};
 
 /// Arguments of `check`.
 #[derive(Debug, Args)]
@@ -46,10 +46,7 @@ fn rows(outlook: &Outlook) -> Vec<(&'static str, String)> {
         ("interior cells", format!("{:.1} %", 100.0 * body.interior_share)),
     ];
     if let Some(transport) = &outlook.transport {
-        rows.push(("Thiele modulus", short(transport.thiele_modulus)));
-        let lost = 100.0 * transport.income_lost_share;
-        rows.push(("income lost to diffusion", format!("{lost:.1} %")));
-        rows.push(("largest fed body", format!("{} cells", transport.largest_fed_cells)));
+        rows.extend(transport_rows(transport));
     }
     if let Some(support) = &outlook.support {
         rows.push(("sharing range", format!("{} body radii", short(support.range_over_radius))));
@@ -65,7 +62,30 @@ fn rows(outlook: &Outlook) -> Vec<(&'static str, String)> {
     rows
 }
 
+fn transport_rows(transport: &TransportOutlook) -> Vec<(&'static str, String)> {
+    let mut rows = Vec::new();
+    if let Some(modulus) = transport.thiele_modulus {
+        let depth = short(transport.depth_um);
+        rows.push(("Thiele modulus", format!("{} over {depth} um of depth", short(modulus))));
+    }
+    if let Some(diameter_um) = transport.critical_diameter_um {
+        let meaning = "um: in a ball beyond it the centre is empty if uptake never slackens";
+        rows.push(("critical diameter", format!("{} {meaning}", short(diameter_um))));
+    }
+    let lost = 100.0 * transport.income_lost_share;
+    rows.push(("income lost to diffusion", format!("{lost:.1} %")));
+    let fed = match transport.largest_fed_cells {
+        Some(cells) => format!("{cells} cells"),
+        None => format!("beyond {LARGEST_LOOKED_AT} cells"),
+    };
+    rows.push(("largest fed body", fed));
+    rows
+}
+
 fn hours(h: f64) -> String {
+    if h.is_infinite() {
+        return "never".to_owned();
+    }
     format!("{} h ({} days)", short(h), short(h / 24.0))
 }
 

@@ -91,6 +91,7 @@ fn report(settings: &Settings, evolved: &Evolved, folder: &Path) -> String {
             rows: &evolved.rows,
             census: &evolved.census,
             replicates_planned: settings.run.replicates,
+            adult_cells: settings.body.adult_cells,
             circumstances: circumstances(settings, &evolved.prediction),
             folder,
         },

@@ -9,6 +9,7 @@ use thiserror::Error;
 
 use crate::record::Fault;
 use crate::scenario::ScenarioError;
+use crate::scenario::registry::entry;
 use crate::study::run::RunError;
 
 /// Why a command could not be done.
@@ -90,6 +91,9 @@ impl Diagnostic for Failure {
     fn help<'a>(&'a self) -> Option<Box<dyn fmt::Display + 'a>> {
         match self {
             Self::Scenario(error) => error.help(),
+            Self::NoCriticalKey { key, .. } if entry(key).is_some() => Some(Box::new(format!(
+                "the scenario does not have it: state it there or with --set {key}=..."
+            ))),
             Self::UnknownTemplate { nearest: Some(name), .. }
             | Self::NoCriticalKey { nearest: Some(name), .. } => {
                 Some(Box::new(format!("did you mean `{name}`?")))

@@ -6,8 +6,12 @@ use clap::Args;
 
 use super::output::{print, print_json};
 use super::{Common, Failure, ScenarioFile};
+use crate::scenario::settings::Layout;
 use crate::scenario::{Override, Settings, nearest};
-use crate::study::prediction::{CriticalQuery, Prediction, predict, predict_with_critical};
+use crate::study::prediction::{
+    CriticalQuery, Prediction, SamplingPart, predict, predict_with_critical,
+};
+use crate::theory::placed::SURE;
 
 /// Arguments of `predict`.
 #[derive(Debug, Args)]
@@ -54,7 +58,7 @@ pub(super) fn run(arguments: &Arguments, common: &Common) -> Result<(), Failure>
     if common.json {
         return print_json(&prediction);
     }
-    Ok(print(&render(&prediction))?)
+    Ok(print(&render(&prediction, &settings))?)
 }
 
 fn with_critical(
@@ -100,9 +104,9 @@ fn bracket(arguments: &Arguments, settings: &Settings) -> Result<Bracket, Failur
 }
 
 /// The prediction as a list to read.
-fn render(prediction: &Prediction) -> String {
+fn render(prediction: &Prediction, settings: &Settings) -> String {
     let mut text = format!("{}\n\n", prediction.title);
-    for (name, value) in rows(prediction) {
+    for (name, value) in rows(prediction).into_iter().chain(cautions(prediction, settings)) {
         // Writing to a string cannot fail.
         let _ = writeln!(text, "{name:<26} {value}");
     }
@@ -134,6 +138,9 @@ fn rows(prediction: &Prediction) -> Vec<(String, String)> {
     for (name, value) in &best.traits {
         rows.push((format!("best {name}"), format!("{value:.3}")));
     }
+    if let Some(sampling) = &prediction.sampling {
+        rows.push(row("the numbers rest on", basis(sampling)));
+    }
     if let Some(critical) = &prediction.critical {
         let (local, global) = (place(critical.local), place(critical.global));
         rows.push(row("critical value of", critical.keys.join(", ")));
@@ -143,6 +150,39 @@ fn rows(prediction: &Prediction) -> Vec<(String, String)> {
         ]);
     }
     rows
+}
+
+/// What theory leaves out, and where its verdict means little.
+fn cautions(prediction: &Prediction, settings: &Settings) -> Vec<(String, String)> {
+    let mut cautions = Vec::new();
+    if prediction.generalist.r0.is_none_or(|r0| r0 <= 1.0) {
+        cautions.push("alike cells leave at most one propagule: they cannot persist");
+    }
+    if matches!(settings.habitat.layout, Layout::Torus { .. }) {
+        cautions.push("theory does not know that neighbours are kin (habitat.layout)");
+    }
+    if settings.budget.turnover_per_h > 0.0 {
+        cautions.push("theory keeps a body's fates for life (budget.turnover_per_h)");
+    }
+    cautions.into_iter().map(|text| ("caution".to_owned(), text.to_owned())).collect()
+}
+
+/// How many bodies and fates the numbers come from, and what that leaves uncertain.
+fn basis(sampling: &SamplingPart) -> String {
+    let SamplingPart { bodies, maturing_share, fates, gain_error, undecided } = *sampling;
+    let fates = fates.map_or_else(String::new, |fates| format!(", {fates} random fates each"));
+    let matured = format!("{:.0} % of which matured", 100.0 * maturing_share);
+    let error = gain_error.map_or_else(String::new, |error| {
+        if undecided {
+            format!(
+                "; no programme beats the generalist by more than four standard errors ({:.2} %)",
+                100.0 * SURE * error
+            )
+        } else {
+            format!("; standard error of the gain {:.2} %", 100.0 * error)
+        }
+    });
+    format!("{bodies} bodies grown, {matured}{fates}{error}")
 }
 
 fn place(value: Option<f64>) -> String {
@@ -156,6 +196,23 @@ fn number(value: Option<f64>) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn what_gains_rest_on_tells_none_from_one_that_chance_may_explain() {
+        let known = SamplingPart {
+            bodies: 40,
+            maturing_share: 0.75,
+            fates: None,
+            gain_error: Some(0.002),
+            undecided: false,
+        };
+        let told = "40 bodies grown, 75 % of which matured; standard error of the gain 0.20 %";
+        assert_eq!(basis(&known), told);
+        let undecided = SamplingPart { fates: Some(16), undecided: true, ..known };
+        let told = "40 bodies grown, 75 % of which matured, 16 random fates each; no programme beats \
+                    the generalist by more than four standard errors (0.80 %)";
+        assert_eq!(basis(&undecided), told);
+    }
 
     #[test]
     fn brackets_are_two_rising_finite_numbers() {

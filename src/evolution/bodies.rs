@@ -1,7 +1,6 @@
 //! Sampled bodies: the cells of a few adult colonies, for looking at.
 
 use crate::record::{BodyRow, Stage};
-use crate::tissue::Lattice;
 use crate::world::{ColonyView, Population};
 
 /// Adult colonies sampled at a stage; sites being alike, the first in site order serve.
@@ -15,19 +14,17 @@ pub(super) fn sample(
     cell_diameter_um: f64,
 ) -> Vec<BodyRow> {
     let generation = population.clock().generation;
-    // Bodies are few and the lattice is large only where bodies are: a copy costs little here.
-    let lattice = population.lattice().clone();
     population
         .adults()
         .take(SAMPLED_BODIES)
-        .flat_map(|body| cells(&lattice, body, cell_diameter_um))
+        .flat_map(|body| cells(body, cell_diameter_um))
         .map(|row| BodyRow { replicate, stage, generation, ..row })
         .collect()
 }
 
-fn cells(lattice: &Lattice, body: ColonyView<'_>, cell_diameter_um: f64) -> Vec<BodyRow> {
+fn cells(body: ColonyView<'_>, cell_diameter_um: f64) -> Vec<BodyRow> {
     let row = |cell: usize| {
-        let [x, y, z] = lattice.position_um(body.places[cell].0, cell_diameter_um);
+        let [x, y, z] = body.position_um(cell, cell_diameter_um);
         BodyRow {
             replicate: 0,
             stage: Stage::End,
@@ -39,8 +36,7 @@ fn cells(lattice: &Lattice, body: ColonyView<'_>, cell_diameter_um: f64) -> Vec<
             z_um: z as f32,
             soma_share: body.shares[cell].0,
             income_eu_per_h: body.budgets[cell].soma_eu_per_h + body.budgets[cell].germ_eu_per_h,
-            // Pooled over the colony: every cell receives the mean viability output.
-            support: body.vitals.viability as f32,
+            support: body.support(cell),
             exposed: body.exposed[cell].0,
             label: body.labels[cell].0,
         }

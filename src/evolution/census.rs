@@ -4,24 +4,30 @@ use std::collections::BTreeSet;
 
 use ndarray::{Array2, Axis};
 
+use super::relatedness::relatedness;
 use crate::record::{CensusRow, TRAITS};
-use crate::scenario::settings::Onset;
+use crate::scenario::Settings;
+use crate::scenario::settings::{Layout, Onset};
 use crate::stats::MutualEntropy;
 use crate::theory::{BodyClass, Programme, division_index};
 use crate::world::components::SomaShare;
 use crate::world::{ColonyView, Population};
 
 /// Counts and measures the population.
-pub(super) fn take(population: &mut Population, onset: &Onset, replicate: u32) -> CensusRow {
+pub(super) fn take(population: &mut Population, settings: &Settings, replicate: u32) -> CensusRow {
     let mut row = CensusRow {
         replicate,
         generation: population.clock().generation,
         time_h: population.clock().now_h,
         parental_age_h: population.take_parental_age_h(),
+        never_matured: population.ledger().never_matured,
         ..CensusRow::default()
     };
-    survey_bodies(&mut row, population.adults(), onset);
+    survey_bodies(&mut row, population.adults(), &settings.onset);
     survey_genotypes(&mut row, population);
+    if settings.habitat.layout != Layout::Mixed {
+        row.relatedness = relatedness(&population.lines().collect::<Vec<_>>());
+    }
     row
 }
 
@@ -50,6 +56,7 @@ fn survey_bodies<'w>(
         row.division_index = Some(index / adults);
         row.mutual_entropy = Some(entropy / adults);
         row.mean_soma_share = Some(share / total);
+        row.adult_cells = Some(total / adults);
         row.germ_share = Some(cells.germ / total);
         row.soma_share = Some(cells.soma / total);
         row.generalist_share = Some(cells.generalists / total);

@@ -5,6 +5,7 @@
 mod bodies;
 mod census;
 mod onset;
+mod relatedness;
 mod replicate;
 mod route;
 pub mod seeding;

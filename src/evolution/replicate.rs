@@ -22,6 +22,8 @@ pub struct Start {
 
 /// Ticks between two looks at whether the run is to stop: a few milliseconds of common scenarios.
 const TICKS_BETWEEN_QUESTIONS: u32 = 256;
+/// The same where bodies are worked out in space, and a tick can take long.
+const TICKS_BETWEEN_QUESTIONS_IN_SPACE: u32 = 4;
 
 /// A replicate under way.
 pub struct Replicate<'s> {
@@ -40,7 +42,7 @@ impl<'s> Replicate<'s> {
     #[must_use]
     pub fn found(settings: &'s Settings, start: Start, number: u32) -> Self {
         let seed = replicate_seed(settings.seed, 0, u64::from(number));
-        let founder = |site| Genotype { programme: start.programme, founder: site };
+        let founder = |site| Genotype::of_founder(start.programme, site);
         let population = Population::founded(settings, start.tick_h, generator(seed), founder);
         Self {
             settings,
@@ -63,6 +65,11 @@ impl<'s> Replicate<'s> {
             return None;
         }
         let due = self.next_census_generation();
+        let pause = if self.settings.is_spatial() {
+            TICKS_BETWEEN_QUESTIONS_IN_SPACE
+        } else {
+            TICKS_BETWEEN_QUESTIONS
+        };
         for ticks in 1_u32.. {
             self.population.tick();
             let first = self.censuses.is_empty() && self.population.adults().next().is_some();
@@ -71,7 +78,7 @@ impl<'s> Replicate<'s> {
                 break;
             }
             // Asked last: a census that is due is never passed over, nor a replicate over without it.
-            if ticks.is_multiple_of(TICKS_BETWEEN_QUESTIONS) && stopped() {
+            if ticks.is_multiple_of(pause) && stopped() {
                 return None;
             }
         }
@@ -125,8 +132,7 @@ impl<'s> Replicate<'s> {
     }
 
     fn take_census(&mut self) {
-        let onset = &self.settings.onset;
-        let row = census::take(&mut self.population, onset, self.number);
+        let row = census::take(&mut self.population, self.settings, self.number);
         let diameter_um = self.settings.body.cell_diameter_um;
         let mut sample =
             |stage| bodies::sample(&mut self.population, self.number, stage, diameter_um);
@@ -141,8 +147,9 @@ impl<'s> Replicate<'s> {
 
     fn row(&mut self) -> ReplicateRow {
         let last = self.censuses.last().filter(|_| self.population.alive() > 0);
-        let (division_index, soma_fraction) =
-            last.map_or((None, None), |row| (row.division_index, row.soma_share));
+        let (division_index, soma_fraction, adult_cells) = last.map_or((None, None, None), |row| {
+            (row.division_index, row.soma_share, row.adult_cells)
+        });
         let outcome = match (self.watch.onset(), self.population.alive()) {
             (Some(_), _) => Outcome::Onset,
             (None, 0) => Outcome::Extinct,
@@ -168,6 +175,8 @@ impl<'s> Replicate<'s> {
             route_exposure: route(Cue::Exposure),
             route_income: route(Cue::Income),
             mean_fitness,
+            adult_cells,
+            never_matured: self.population.ledger().never_matured,
         }
     }
 

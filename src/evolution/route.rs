@@ -38,8 +38,7 @@ fn contributions(body: &ColonyView<'_>, cue: Cue) -> Vec<f64> {
         Cue::Noise => cells.map(|i| weight * f64::from(body.noise[i].0)).collect(),
         Cue::Lineage => cells.map(|i| weight * f64::from(body.labels[i].0)).collect(),
         Cue::Exposure => cells.map(|i| weight * f64::from(u8::from(body.exposed[i].0))).collect(),
-        // Every cell is fully fed: incomes do not differ.
-        Cue::Income => vec![0.0; body.shares.len()],
+        Cue::Income => cells.map(|i| weight * body.income_cue(i)).collect(),
     }
 }
 

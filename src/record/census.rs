@@ -45,13 +45,21 @@ pub struct CensusRow {
     pub trait_mean: [f64; TRAITS.len()],
     /// Variance (divisor n) of each trait over the colonies alive.
     pub trait_variance: [f64; TRAITS.len()],
+    /// Mean number of living cells of adult colonies; `None` without adults.
+    pub adult_cells: Option<f64>,
+    /// Colonies that settled since the start and whose growth stops short of adult size, some of
+    /// which may still be growing.
+    pub never_matured: u64,
+    /// Relatedness of living colonies 1 to 4 sites apart on a torus; `None` in a mixed habitat, where
+    /// all colonies carry the same line, or where no such pair lives.
+    pub relatedness: [Option<f64>; 4],
 }
 
 impl TableRow for CensusRow {
     const TABLE: &'static str = "census";
 
     fn columns() -> Vec<Column<Self>> {
-        counts_and_shares().into_iter().chain(trait_moments()).collect()
+        counts_and_shares().into_iter().chain(trait_moments()).chain(space()).collect()
     }
 }
 
@@ -90,6 +98,18 @@ fn trait_moments() -> [Column<CensusRow>; 2 * TRAITS.len()] {
         column!(F64, trait_variance[3], "(logit per cue unit)^2", "var_exposure"),
         column!(F64, trait_variance[4], "(logit per cue unit)^2", "var_income"),
         column!(F64, trait_variance[5], "logit^2", "var_noise_bias"),
+    ]
+}
+
+/// Columns that came with space; they follow those of earlier versions.
+fn space() -> [Column<CensusRow>; 6] {
+    [
+        column!(OptionalF64, adult_cells, "1"),
+        column!(U64, never_matured, "1"),
+        column!(OptionalF64, relatedness[0], "1", "relatedness_1"),
+        column!(OptionalF64, relatedness[1], "1", "relatedness_2"),
+        column!(OptionalF64, relatedness[2], "1", "relatedness_3"),
+        column!(OptionalF64, relatedness[3], "1", "relatedness_4"),
     ]
 }
 

@@ -3,7 +3,7 @@
 use parquet::basic::Type as Physical;
 use parquet::column::reader::{ColumnReader, get_typed_column_reader};
 use parquet::data_type::{
-    BoolType, ByteArray, ByteArrayType, DataType, DoubleType, FloatType, Int32Type,
+    BoolType, ByteArray, ByteArrayType, DataType, DoubleType, FloatType, Int32Type, Int64Type,
 };
 use parquet::errors::{ParquetError, Result};
 use parquet::file::writer::SerializedColumnWriter;
@@ -16,6 +16,8 @@ use parquet::file::writer::SerializedColumnWriter;
 pub enum Field<R> {
     /// A count or an index.
     U32(fn(&R) -> u32, fn(&mut R, u32)),
+    /// A count that may pass four billion.
+    U64(fn(&R) -> u64, fn(&mut R, u64)),
     /// A small signed number.
     I8(fn(&R) -> i8, fn(&mut R, i8)),
     /// A yes or no.
@@ -83,6 +85,7 @@ impl<R> Column<R> {
         let name = self.name;
         match self.field {
             Field::U32(..) => format!("required int32 {name} (INTEGER(32,false));"),
+            Field::U64(..) => format!("required int64 {name} (INTEGER(64,false));"),
             Field::I8(..) => format!("required int32 {name} (INTEGER(8,true));"),
             Field::Bool(..) => format!("required boolean {name};"),
             Field::F32(..) => format!("required float {name};"),
@@ -96,6 +99,7 @@ impl<R> Column<R> {
     pub(super) const fn physical(&self) -> (Physical, bool) {
         match self.field {
             Field::U32(..) | Field::I8(..) => (Physical::INT32, false),
+            Field::U64(..) => (Physical::INT64, false),
             Field::Bool(..) => (Physical::BOOLEAN, false),
             Field::F32(..) => (Physical::FLOAT, false),
             Field::F64(..) => (Physical::DOUBLE, false),
@@ -108,6 +112,7 @@ impl<R> Column<R> {
     pub(super) fn write(&self, rows: &[R], to: &mut SerializedColumnWriter<'_>) -> Result<()> {
         match self.field {
             Field::U32(get, _) => put::<Int32Type, _>(rows, to, |row| get(row).cast_signed()),
+            Field::U64(get, _) => put::<Int64Type, _>(rows, to, |row| get(row).cast_signed()),
             Field::I8(get, _) => put::<Int32Type, _>(rows, to, |row| i32::from(get(row))),
             Field::Bool(get, _) => put::<BoolType, _>(rows, to, get),
             Field::F32(get, _) => put::<FloatType, _>(rows, to, get),
@@ -129,6 +134,9 @@ impl<R> Column<R> {
         match self.field {
             Field::U32(_, set) => {
                 take::<Int32Type, _>(from, rows, |row, value| set(row, value.cast_unsigned()))
+            }
+            Field::U64(_, set) => {
+                take::<Int64Type, _>(from, rows, |row, value| set(row, value.cast_unsigned()))
             }
             Field::I8(_, set) => {
                 let mut fits = true;

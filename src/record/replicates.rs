@@ -49,10 +49,15 @@ pub struct ReplicateRow {
     pub route_income: Option<f64>,
     /// Mean over the adults of that census of the propagules each expects to release, `F / (c_p m)`.
     pub mean_fitness: Option<f64>,
+    /// Mean number of living cells of those adults.
+    pub adult_cells: Option<f64>,
+    /// Colonies that settled since the start and whose growth stops short of adult size, some of
+    /// which may still be growing.
+    pub never_matured: u64,
 }
 
 /// Columns of `replicates.csv`; also stated when there is no row.
-const COLUMNS: [&str; 13] = [
+const COLUMNS: [&str; 15] = [
     "replicate",
     "seed",
     "outcome",
@@ -66,6 +71,8 @@ const COLUMNS: [&str; 13] = [
     "route_exposure",
     "route_income",
     "mean_fitness",
+    "adult_cells",
+    "never_matured",
 ];
 
 impl ReplicateRow {
@@ -94,6 +101,7 @@ impl ReplicateRow {
             &mut self.route_exposure,
             &mut self.route_income,
             &mut self.mean_fitness,
+            &mut self.adult_cells,
         ] {
             *value = value.filter(|value| value.is_finite());
         }
@@ -148,6 +156,8 @@ mod tests {
             route_exposure,
             route_income,
             mean_fitness: Some(1.5),
+            adult_cells: Some(30.0),
+            never_matured: 2,
         }
     }
 

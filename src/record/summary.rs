@@ -20,6 +20,8 @@ pub struct Summary {
     pub onset: OnsetSummary,
     /// Replicates that died out.
     pub extinct: usize,
+    /// Colonies that settled and whose growth stops short of adult size, over all replicates.
+    pub never_matured: u64,
     /// Where the replicates that did not die out ended.
     #[serde(rename = "final")]
     pub last: FinalSummary,
@@ -59,6 +61,8 @@ pub struct FinalSummary {
     pub division_index_high: Option<f64>,
     /// Mean share of soma cells.
     pub soma_fraction: Option<f64>,
+    /// Mean number of living cells of adult colonies, over replicates.
+    pub adult_cells: Option<f64>,
     /// Commonest class of bodies; of equally common ones the least differentiated.
     pub class: Option<BodyClass>,
     /// Commonest route; of equally common ones the first in [`Cue::ALL`].
@@ -118,6 +122,7 @@ impl Summary {
             replicates: rows.len(),
             onset: OnsetSummary::of(rows, count_of(Outcome::Onset))?,
             extinct: count_of(Outcome::Extinct),
+            never_matured: rows.iter().map(|row| row.never_matured).sum(),
             last: FinalSummary::of(rows)?,
             prediction,
             throughput,
@@ -171,6 +176,7 @@ impl FinalSummary {
             division_index_low: interval.map(|interval| interval.low),
             division_index_high: interval.map(|interval| interval.high),
             soma_fraction: mean(|row| row.soma_fraction)?.map(|share| share.mean),
+            adult_cells: mean(|row| row.adult_cells)?.map(|cells| cells.mean),
             class: commonest(&BodyClass::ALL, alive().filter_map(|row| row.class)),
             route: commonest(&Cue::ALL, alive().filter_map(ReplicateRow::route)),
         })

@@ -28,6 +28,8 @@ pub struct EvolveReport<'a> {
     pub census: &'a [CensusRow],
     /// Replicates asked for.
     pub replicates_planned: u32,
+    /// Cells of an adult body asked for.
+    pub adult_cells: usize,
     /// What the run had to work with.
     pub circumstances: Circumstances,
     /// Where the files are.
@@ -110,6 +112,7 @@ fn answer(page: &mut Page, report: &EvolveReport<'_>) {
     page.line("Onset", &onset(report));
     page.line("Division index", &division_index(summary));
     page.line("Class and route", &class_and_route(report));
+    hunger(page, report);
     if summary.extinct > 0 {
         page.line(
             "Died out",
@@ -120,6 +123,32 @@ fn answer(page: &mut Page, report: &EvolveReport<'_>) {
             ),
         );
     }
+}
+
+/// What bodies fell short of; nothing where they all reached their size and kept it.
+fn hunger(page: &mut Page, report: &EvolveReport<'_>) {
+    if let Some(size) = adult_size(report) {
+        page.line("Adult size", &size);
+    }
+    // Counted when they settle, so that some may still be growing.
+    match report.summary.never_matured {
+        0 => {}
+        1 => page.line("Never matured", "1 colony settled whose growth stops short of adult size"),
+        many => {
+            let settled = format!("{} colonies settled whose growth stops short", count(many));
+            page.line("Never matured", &format!("{settled} of adult size"));
+        }
+    }
+}
+
+/// Mean size of adult bodies where it is not the one asked for, with decimals enough to tell the two
+/// apart; what six do not tell is rounding.
+fn adult_size(report: &EvolveReport<'_>) -> Option<String> {
+    let (asked, found) = (report.adult_cells as f64, report.summary.last.adult_cells?);
+    let told = |decimals| [found, asked].map(|cells| format!("{cells:.decimals$}"));
+    let [found, _] = (1..=6).map(told).find(|[found, asked]| found != asked)?;
+    let asked = count(report.adult_cells as u64);
+    Some(format!("adult bodies hold {found} cells on average of {asked}"))
 }
 
 fn finished(report: &EvolveReport<'_>) -> String {

@@ -165,6 +165,16 @@ pub enum FaultKind {
         /// The ceiling.
         limit: u64,
     },
+    /// Sites that make no square torus.
+    #[error("`habitat.sites` = {sites} is no square number, but a torus is as wide as it is long")]
+    NotSquare {
+        /// Sites.
+        sites: usize,
+        /// The next square below.
+        below: usize,
+        /// The next square above.
+        above: usize,
+    },
     /// A point of a return curve breaks the curve's rules.
     #[error("`{key}`: {problem}")]
     Points {
@@ -261,6 +271,9 @@ impl FaultKind {
                 format!("add \"{cue}\" to `traits.cues`, or remove the start")
             }
             Self::TooManyCells { .. } => "use fewer sites or smaller bodies".into(),
+            Self::NotSquare { below, above, .. } => {
+                format!("the nearest squares are {below} and {above}")
+            }
             Self::OverrideForm { .. } => "write, for instance, body.adult_cells=32".into(),
             _ => return None,
         })

@@ -19,9 +19,10 @@ use super::overrides::Override;
 use super::registry::Parameter;
 use super::registry::domain::Domain;
 use super::registry::numbers::{Whole, WordOr};
-use super::registry::parameters::{self as p, TaskParameters};
+use super::registry::parameters::{self as p, LayoutKind, TaskParameters};
 use super::settings::{
-    Baseline, Body, Budget, Habitat, Life, Onset, Returns, Run, Settings, Tick, Traits,
+    Baseline, Body, Budget, Habitat, Layout, Life, Nutrient, Onset, Returns, Run, Settings,
+    Support, Tick, Traits, Waste,
 };
 use super::tree::{Content, Frame, Keys, Node, Origin};
 use super::{relations, unknown};
@@ -199,7 +200,7 @@ impl Reader<'_> {
         Settings {
             title: self.take(&p::TITLE),
             seed: self.take(&p::SEED),
-            habitat: Habitat { sites: self.size(&p::SITES), layout: self.take(&p::LAYOUT) },
+            habitat: self.habitat(),
             body: Body {
                 plan: self.take(&p::PLAN),
                 adult_cells: self.size(&p::ADULT_CELLS),
@@ -211,10 +212,27 @@ impl Reader<'_> {
                 viability: self.task(&p::VIABILITY),
                 fecundity: self.task(&p::FECUNDITY),
             },
+            support: self.states("support").then(|| self.support()),
+            nutrient: self.states("nutrient").then(|| self.nutrient()),
+            waste: self.states("waste").then(|| self.waste()),
             traits: self.traits(),
             run: self.run(),
             onset: self.onset(),
         }
+    }
+
+    /// Whether the scenario states the table at `path`, be it empty, or any key of it.
+    fn states(&self, path: &str) -> bool {
+        self.find(path).is_some()
+    }
+
+    fn habitat(&mut self) -> Habitat {
+        let sites = self.size(&p::SITES);
+        let layout = match self.take(&p::LAYOUT) {
+            LayoutKind::Mixed => Layout::Mixed,
+            LayoutKind::Torus => Layout::Torus { dispersal_sites: self.take(&p::DISPERSAL) },
+        };
+        Habitat { sites, layout }
     }
 
     fn life(&mut self) -> Life {
@@ -233,6 +251,8 @@ impl Reader<'_> {
             upkeep_eu_per_h: self.take(&p::UPKEEP),
             division_cost_eu: self.take(&p::DIVISION_COST),
             division_cv: self.take(&p::DIVISION_CV),
+            starvation_h: self.take(&p::STARVATION),
+            turnover_per_h: self.take(&p::TURNOVER),
         }
     }
 
@@ -258,6 +278,29 @@ impl Reader<'_> {
             curve,
             surface_effect: self.take(&task.surface_effect),
             interior_effect: self.take(&task.interior_effect),
+        }
+    }
+
+    fn support(&mut self) -> Support {
+        Support { range_diameters: self.take(&p::SUPPORT.range), leak: self.take(&p::SUPPORT.leak) }
+    }
+
+    fn nutrient(&mut self) -> Nutrient {
+        Nutrient {
+            bath_mm: self.take(&p::NUTRIENT.bath),
+            half_saturation_mm: self.take(&p::NUTRIENT.half_saturation),
+            uptake_fmol_per_h: self.take(&p::NUTRIENT.uptake),
+            diffusivity_um2_per_s: self.take(&p::NUTRIENT.diffusivity),
+            exchange: self.take(&p::NUTRIENT.exchange),
+        }
+    }
+
+    fn waste(&mut self) -> Waste {
+        Waste {
+            release_fmol_per_h: self.take(&p::WASTE.release),
+            diffusivity_um2_per_s: self.take(&p::WASTE.diffusivity),
+            toxic_mm: self.take(&p::WASTE.toxic),
+            exchange: self.take(&p::WASTE.exchange),
         }
     }
 

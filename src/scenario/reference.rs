@@ -33,9 +33,8 @@ pub fn page() -> String {
 }
 
 fn open_table(page: &mut String, path: &str) {
-    let meaning = registry::tables().iter().find(|table| table.path == path);
-    let head = match meaning {
-        Some(table) => format!("## `[{path}]`\n\n{}.", table.meaning),
+    let head = match registry::table(path) {
+        Some(table) => format!("## `[{path}]`\n\n{}.", table.description()),
         None => "## At the top".to_owned(),
     };
     let _ = write!(

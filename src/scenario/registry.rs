@@ -8,9 +8,11 @@ pub(crate) mod numbers;
 pub(crate) mod parameters;
 pub(crate) mod per_cue;
 pub(crate) mod points;
+mod tables;
 pub(crate) mod words;
 
 use domain::Domain;
+pub(crate) use tables::LATER;
 
 /// A parameter of the scenario: where it stands, what it means and what it may be.
 #[derive(Debug)]
@@ -111,6 +113,34 @@ pub struct Table {
     pub path: &'static str,
     /// One line that says what its keys are about.
     pub meaning: &'static str,
+    /// Where the table switches something on: how things are without it. A scenario that states
+    /// it, empty or not, or any key of it, has it with the defaults of its other keys.
+    pub absent: Option<&'static str>,
+}
+
+impl Table {
+    /// A table that every scenario has, stated or not.
+    pub(crate) const fn always(path: &'static str, meaning: &'static str) -> Self {
+        Self { path, meaning, absent: None }
+    }
+
+    /// A table that switches something on, and how things are without it.
+    pub(crate) const fn optional(
+        path: &'static str,
+        meaning: &'static str,
+        absent: &'static str,
+    ) -> Self {
+        Self { path, meaning, absent: Some(absent) }
+    }
+
+    /// What its keys are about and, where it is optional, how things are without it.
+    #[must_use]
+    pub fn description(&self) -> String {
+        match self.absent {
+            Some(absent) => format!("{}. Optional: without this table, {absent}", self.meaning),
+            None => self.meaning.to_owned(),
+        }
+    }
 }
 
 /// Something of the scenario file that later versions will know.
@@ -131,7 +161,13 @@ pub fn entries() -> &'static [&'static dyn Described] {
 /// All tables, in the order of the scenario file.
 #[must_use]
 pub fn tables() -> &'static [Table] {
-    parameters::TABLES
+    tables::TABLES
+}
+
+/// The table at `path`, if there is one.
+#[must_use]
+pub fn table(path: &str) -> Option<&'static Table> {
+    tables().iter().find(|table| table.path == path)
 }
 
 /// The parameter at `path`, if there is one.
@@ -157,8 +193,18 @@ mod tests {
 
     #[test]
     fn units_in_names_agree_with_units() {
-        let suffixes =
-            [("_eu_per_h", "eu/h"), ("_per_h", "1/h"), ("_um", "um"), ("_eu", "eu"), ("_h", "h")];
+        let suffixes = [
+            ("_eu_per_h", "eu/h"),
+            ("_fmol_per_h", "fmol/h"),
+            ("_per_h", "1/h"),
+            ("_um2_per_s", "um^2/s"),
+            ("_um", "um"),
+            ("_eu", "eu"),
+            ("_h", "h"),
+            ("_mM", "mM"),
+            ("_diameters", "cell diameters"),
+            ("dispersal_sites", "site widths"),
+        ];
         for entry in entries() {
             if let Some((_, unit)) = suffixes.iter().find(|(end, _)| entry.name().ends_with(end)) {
                 assert_eq!(entry.unit(), *unit, "{}", entry.path());

@@ -6,13 +6,14 @@ use super::fault::FaultKind;
 use super::read::Reader;
 use super::registry::parameters::{self as p, MOST_CELLS};
 use super::registry::{self, Described};
-use super::settings::{Baseline, Settings};
+use super::settings::{Baseline, Layout, Settings};
 use super::tree::Content;
 
 /// Notes every pair of keys that do not fit each other. Keys already at fault are left alone.
 pub(crate) fn check(settings: &Settings, reader: &mut Reader<'_>) {
     orders(settings, reader);
     cells(settings, reader);
+    square(settings, reader);
     starts(settings, reader);
     conditions(reader);
 }
@@ -81,6 +82,19 @@ fn cells(settings: &Settings, reader: &mut Reader<'_>) {
         written.path,
         FaultKind::TooManyCells { sites, adult_cells, cells, limit: MOST_CELLS },
     );
+}
+
+/// A torus is as wide as it is long.
+fn square(settings: &Settings, reader: &mut Reader<'_>) {
+    let sites = settings.habitat.sites;
+    let side = sites.isqrt();
+    let torus = matches!(settings.habitat.layout, Layout::Torus { .. });
+    if !torus || side * side == sites || !reader.sound(&[p::SITES.path, p::LAYOUT.path]) {
+        return;
+    }
+    let written = if reader.find(p::SITES.path).is_some() { p::SITES.path } else { p::LAYOUT.path };
+    let (below, above) = (side * side, (side + 1) * (side + 1));
+    reader.note(written, FaultKind::NotSquare { sites, below, above });
 }
 
 fn starts(settings: &Settings, reader: &mut Reader<'_>) {

@@ -6,8 +6,8 @@ use super::curve::{CurveKind, CurveSpec, spec_of};
 use super::registry::Parameter;
 use super::registry::domain::Domain;
 use super::registry::numbers::{Whole, WordOr};
-use super::registry::parameters::{self as p, TaskParameters};
-use super::settings::{Baseline, Settings, Tick};
+use super::registry::parameters::{self as p, LayoutKind, TaskParameters};
+use super::settings::{Baseline, Layout, Nutrient, Settings, Support, Tick, Waste};
 use super::template;
 use crate::theory::TaskReturn;
 
@@ -38,17 +38,36 @@ impl Settings {
         let mut values = Values::new();
         add(&mut values, &p::TITLE, &self.title);
         add(&mut values, &p::SEED, &self.seed);
+        self.add_habitat(&mut values);
         self.add_body(&mut values);
         add_task(&mut values, &p::VIABILITY, &self.returns.viability);
         add_task(&mut values, &p::FECUNDITY, &self.returns.fecundity);
+        if let Some(support) = &self.support {
+            add_support(&mut values, support);
+        }
+        if let Some(nutrient) = &self.nutrient {
+            add_nutrient(&mut values, nutrient);
+        }
+        if let Some(waste) = &self.waste {
+            add_waste(&mut values, waste);
+        }
         self.add_traits(&mut values);
         self.add_run(&mut values);
         values
     }
 
-    fn add_body(&self, values: &mut Values) {
+    fn add_habitat(&self, values: &mut Values) {
         add_size(values, &p::SITES, self.habitat.sites);
-        add(values, &p::LAYOUT, &self.habitat.layout);
+        match self.habitat.layout {
+            Layout::Mixed => add(values, &p::LAYOUT, &LayoutKind::Mixed),
+            Layout::Torus { dispersal_sites } => {
+                add(values, &p::LAYOUT, &LayoutKind::Torus);
+                add(values, &p::DISPERSAL, &dispersal_sites);
+            }
+        }
+    }
+
+    fn add_body(&self, values: &mut Values) {
         add(values, &p::PLAN, &self.body.plan);
         add_size(values, &p::ADULT_CELLS, self.body.adult_cells);
         add(values, &p::CELL_DIAMETER, &self.body.cell_diameter_um);
@@ -61,6 +80,8 @@ impl Settings {
         add(values, &p::UPKEEP, &self.budget.upkeep_eu_per_h);
         add(values, &p::DIVISION_COST, &self.budget.division_cost_eu);
         add(values, &p::DIVISION_CV, &self.budget.division_cv);
+        add(values, &p::STARVATION, &self.budget.starvation_h);
+        add(values, &p::TURNOVER, &self.budget.turnover_per_h);
     }
 
     fn add_traits(&self, values: &mut Values) {
@@ -131,6 +152,26 @@ fn add_task(values: &mut Values, task: &TaskParameters, returns: &TaskReturn) {
     }
     add(values, &task.surface_effect, &returns.surface_effect);
     add(values, &task.interior_effect, &returns.interior_effect);
+}
+
+fn add_support(values: &mut Values, support: &Support) {
+    add(values, &p::SUPPORT.range, &support.range_diameters);
+    add(values, &p::SUPPORT.leak, &support.leak);
+}
+
+fn add_nutrient(values: &mut Values, nutrient: &Nutrient) {
+    add(values, &p::NUTRIENT.bath, &nutrient.bath_mm);
+    add(values, &p::NUTRIENT.half_saturation, &nutrient.half_saturation_mm);
+    add(values, &p::NUTRIENT.uptake, &nutrient.uptake_fmol_per_h);
+    add(values, &p::NUTRIENT.diffusivity, &nutrient.diffusivity_um2_per_s);
+    add(values, &p::NUTRIENT.exchange, &nutrient.exchange);
+}
+
+fn add_waste(values: &mut Values, waste: &Waste) {
+    add(values, &p::WASTE.release, &waste.release_fmol_per_h);
+    add(values, &p::WASTE.diffusivity, &waste.diffusivity_um2_per_s);
+    add(values, &p::WASTE.toxic, &waste.toxic_mm);
+    add(values, &p::WASTE.exchange, &waste.exchange);
 }
 
 /// Puts `value` at the dotted `path`, making the tables on the way.

@@ -40,8 +40,8 @@ fn table_schema(path: &str) -> Value {
     let mut schema = json!({
         "type": "object", "properties": properties, "additionalProperties": false,
     });
-    if let Some(known) = registry::tables().iter().find(|table| table.path == path) {
-        schema["description"] = known.meaning.into();
+    if let Some(known) = registry::table(path) {
+        schema["description"] = known.description().into();
     }
     if !required.is_empty() {
         schema["required"] = required.into();

@@ -37,6 +37,9 @@ pub const TEMPLATES: &[Template] = &[
     config!("asymmetric-division", "fates by lineage against fates by chance in a small body"),
     config!("surface-work", "work that pays only at the surface, though returns diminish"),
     config!("valley", "unequal exponents: stable generalists, better specialists out of reach"),
+    config!("help-within-reach", "help that reaches the next cell: sisters side by side or chance"),
+    config!("starved-core", "food that does not reach the core: fates by hunger"),
+    config!("kin-next-door", "propagules that land next door: kin compete for sites"),
 ];
 
 impl Template {
@@ -104,7 +107,10 @@ fn write(settings: &Settings, comments: bool) -> String {
     for entry in registry::entries() {
         if entry.table() != table {
             table = entry.table();
-            open_table(&mut text, table, comments);
+            let stated = values.iter().any(|(path, _)| {
+                path.strip_prefix(table).is_some_and(|rest| rest.starts_with('.'))
+            });
+            open_table(&mut text, table, stated, comments);
         }
         let value = values.iter().find(|(path, _)| *path == entry.path()).map(|(_, value)| value);
         write_entry(&mut text, *entry, value, comments);
@@ -112,12 +118,17 @@ fn write(settings: &Settings, comments: bool) -> String {
     text
 }
 
-fn open_table(text: &mut String, table: &str, comments: bool) {
-    text.push('\n');
-    if let Some(known) = registry::tables().iter().find(|known| known.path == table && comments) {
-        comment(text, &format!("{}.", known.meaning));
+/// Opens a table; one that the settings do not have stands there as a comment, if at all.
+fn open_table(text: &mut String, table: &str, stated: bool, comments: bool) {
+    if !stated && !comments {
+        return;
     }
-    push(text, format_args!("[{table}]\n"));
+    text.push('\n');
+    if let Some(known) = registry::table(table).filter(|_| comments) {
+        comment(text, &format!("{}.", known.description()));
+    }
+    let mark = if stated { "" } else { "# " };
+    push(text, format_args!("{mark}[{table}]\n"));
 }
 
 fn write_entry(text: &mut String, entry: &dyn Described, value: Option<&toml::Value>, say: bool) {

@@ -3,7 +3,7 @@
 use super::fault::FaultKind;
 use super::nearest::{likeness, nearest};
 use super::notes::Notes;
-use super::registry::{self, parameters::LATER};
+use super::registry::{self, LATER};
 use super::tree::{Content, Keys, Node};
 
 /// Likeness of the last names above which a key of another table is offered.

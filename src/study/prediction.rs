@@ -1,7 +1,11 @@
 //! What theory says of a scenario, without simulating a population.
 //!
 //! The time of growth is that of synchronous rounds, as with `division_cv = 0`, also where division
-//! costs vary; the labels that growth leaves are then those of a sample of bodies.
+//! costs vary; the labels that growth leaves are then those of a sample of bodies. Where it matters
+//! where in the body a cell lies, theory is told of a sample of bodies cell by cell.
+
+mod bodies;
+mod reach;
 
 use std::collections::BTreeMap;
 
@@ -14,6 +18,7 @@ use crate::theory::best::BETTER;
 use crate::theory::body::joined;
 use crate::theory::critical::{global_critical, local_critical};
 use crate::theory::lineage::label_compositions;
+use crate::theory::placed::Sample;
 use crate::theory::reaction_norm::NOISE_BIAS_BOUND;
 use crate::theory::{
     BestProgramme, BodyClass, CellKind, Composition, Compositions, Cue, CueSelection, Generalist,
@@ -36,6 +41,27 @@ pub struct Prediction {
     pub verdict: Verdict,
     /// Where verdicts change, if that was asked for.
     pub critical: Option<CriticalPart>,
+    /// What the numbers rest on, where bodies are known cell by cell.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub sampling: Option<SamplingPart>,
+}
+
+/// What numbers about bodies that are known cell by cell rest on.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct SamplingPart {
+    /// Bodies grown.
+    pub bodies: usize,
+    /// Share of them that matured.
+    pub maturing_share: f64,
+    /// Random fates drawn per body for the last word on the most promising programme; null where all were
+    /// summed, or their mean is known in closed form.
+    pub fates: Option<usize>,
+    /// Standard error of the best programme's gain in ln R0, from bodies and fates. Where the generalist
+    /// stands and this is not 0, some programme looked better, but not by more than four of these.
+    pub gain_error: Option<f64>,
+    /// Whether it is so.
+    #[serde(skip)]
+    pub undecided: bool,
 }
 
 /// The generalist optimum.
@@ -104,7 +130,7 @@ pub fn predict(settings: &Settings) -> Prediction {
     let generalist = model.generalist();
     let selection = model.selection_at(&generalist);
     let best = model.best_programme(&generalist);
-    let better_elsewhere = best.outdoes(&generalist, BETTER);
+    let better_elsewhere = best.outdoes(BETTER);
     Prediction {
         title: settings.title.clone(),
         generalist: generalist_part(&generalist),
@@ -112,6 +138,7 @@ pub fn predict(settings: &Settings) -> Prediction {
         best: best_part(&best, settings),
         verdict: Model::verdict(&selection, better_elsewhere),
         critical: None,
+        sampling: model.placed().map(|bodies| sampling_part(&bodies.sample(), &best)),
     }
 }
 
@@ -142,8 +169,13 @@ pub fn generalist_of(settings: &Settings) -> Generalist {
 #[must_use]
 pub fn model(settings: &Settings) -> Model {
     let returns = [settings.returns.viability.clone(), settings.returns.fecundity.clone()];
-    let cues = settings.traits.cues;
-    Model::new(life_history(settings), returns, cues, &compositions(settings))
+    let (life, cues) = (life_history(settings), settings.traits.cues);
+    let model = if settings.is_spatial() {
+        Model::of_placed(life, returns, cues, bodies::placed_bodies(settings))
+    } else {
+        Model::new(life, returns, cues, &compositions(settings))
+    };
+    model
         .with_bounds(settings.traits.bound, NOISE_BIAS_BOUND)
         .with_cell_classes(settings.onset.germ_below, settings.onset.soma_above)
 }
@@ -237,6 +269,16 @@ fn best_part(best: &BestProgramme, settings: &Settings) -> BestPart {
         division_index: best.outcome.division_index,
         soma_fraction: best.outcome.soma_fraction,
         class: best.outcome.class,
+    }
+}
+
+fn sampling_part(sample: &Sample, best: &BestProgramme) -> SamplingPart {
+    SamplingPart {
+        bodies: sample.bodies,
+        maturing_share: sample.maturing,
+        fates: if best.gain.draws_fates { sample.fates } else { None },
+        gain_error: finite(best.gain.standard_error),
+        undecided: best.gain.is_undecided(),
     }
 }
 

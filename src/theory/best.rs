@@ -3,6 +3,7 @@
 use super::fitness::Model;
 use super::generalist::{Generalist, finite_or_lost};
 use super::outcome::Outcome;
+use super::placed::Gain;
 use super::reaction_norm::{Cue, Programme};
 use super::search::{Summit, climb, polish};
 
@@ -15,6 +16,8 @@ pub struct BestProgramme {
     pub r0: f64,
     /// Its bodies.
     pub outcome: Outcome,
+    /// What it gains on the generalist; where it is the generalist, how well that is known.
+    pub gain: Gain,
 }
 
 /// Division index from which a programme counts as differentiated.
@@ -29,11 +32,11 @@ const STARTS: usize = 12;
 const FINALISTS: usize = 3;
 
 impl BestProgramme {
-    /// Whether it is differentiated and beats the generalist by more than `margin` in ln R0.
+    /// Whether it is differentiated and beats the generalist by more than `margin` in ln R0, and more
+    /// than chance explains where its fates are drawn.
     #[must_use]
-    pub fn outdoes(&self, generalist: &Generalist, margin: f64) -> bool {
-        let gain = libm::log(self.r0) - libm::log(generalist.r0);
-        self.outcome.division_index >= DIFFERENTIATED && gain > margin
+    pub fn outdoes(&self, margin: f64) -> bool {
+        self.outcome.division_index >= DIFFERENTIATED && self.gain.exceeds(margin)
     }
 }
 
@@ -42,7 +45,8 @@ impl Model {
     /// noise cue's bias. A deterministic search: a coarse grid with all corners, climbs from the
     /// best point of every pattern of signs, the highest of them refined; all that on a sketch of
     /// the model, and the best of it once more on the model itself. Between equals the generalist
-    /// stands; a trait that makes no difference is 0. Where a mirror image does as well, noise has
+    /// stands, as it does where drawn fates do not tell the difference from chance; a trait that makes
+    /// no difference is 0. Where a mirror image does as well, noise has
     /// positive responsiveness.
     #[must_use]
     pub fn best_programme(&self, generalist: &Generalist) -> BestProgramme {
@@ -67,11 +71,22 @@ impl Model {
             Some(top) if top.value > bar => space.programme(&top.at),
             _ => generalist.programme(),
         };
-        BestProgramme {
-            programme,
-            r0: self.expected_propagules(&programme),
-            outcome: self.outcome(&programme),
+        let Some(placed) = &self.placed else {
+            let r0 = self.expected_propagules(&programme);
+            let ln_r0 = libm::log(r0) - libm::log(generalist.r0);
+            let gain = Gain { ln_r0, standard_error: 0.0, draws_fates: false };
+            return self.built_by(programme, r0, gain);
+        };
+        let judged = self.judge(placed, &programme, &generalist.programme());
+        if judged.gain.exceeds(ROUNDING) {
+            self.built_by(programme, judged.r0, judged.gain)
+        } else {
+            self.built_by(generalist.programme(), generalist.r0, judged.no_gain)
         }
+    }
+
+    fn built_by(&self, programme: Programme, r0: f64, gain: Gain) -> BestProgramme {
+        BestProgramme { programme, r0, outcome: self.outcome(&programme), gain }
     }
 }
 
@@ -112,9 +127,13 @@ struct TraitSpace {
 }
 
 impl TraitSpace {
-    /// The income cue is left out: it cannot vary while all cells are fully fed.
+    /// Cues that cannot vary are left out: that of income while all cells are fully fed, and
+    /// whatever reads the same in all cells of placed bodies.
     fn of(model: &Model) -> Self {
-        let cues: Vec<Cue> = model.cues.iter().filter(|cue| *cue != Cue::Income).collect();
+        let cues: Vec<Cue> = match &model.placed {
+            Some(placed) => placed.varying(model.cues).iter().collect(),
+            None => model.cues.iter().filter(|cue| *cue != Cue::Income).collect(),
+        };
         let mut bounds = vec![(-model.bound, model.bound)];
         for cue in &cues {
             // Turning noise upside down with its bias changes nothing: one half is enough.

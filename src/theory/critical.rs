@@ -2,12 +2,28 @@
 
 use super::fitness::Model;
 
-/// Points at which the bracket is looked at, to find the first change.
-const LOCAL_LOOKS: u32 = 48;
-const GLOBAL_LOOKS: u32 = 16;
-/// Halvings of the interval with the change: to the last digits of a double.
-const LOCAL_HALVINGS: u32 = 48;
-const GLOBAL_HALVINGS: u32 = 28;
+/// How hard a change of the local and the global verdict is looked for.
+const LOCAL: Effort = Effort { looks: 48, halvings: 48 };
+const GLOBAL: Effort = Effort { looks: 16, halvings: 28 };
+/// The same where bodies are placed, which are grown anew at each value.
+const LOCAL_PLACED: Effort = Effort { looks: 16, halvings: 30 };
+const GLOBAL_PLACED: Effort = Effort { looks: 8, halvings: 16 };
+
+/// How hard a change is looked for.
+#[derive(Clone, Copy)]
+struct Effort {
+    /// Points at which the bracket is looked at, to find the first change.
+    looks: u32,
+    /// Halvings of the interval with the change; about 48 lead to the last digits of a double.
+    halvings: u32,
+}
+
+impl Effort {
+    const fn on(model: &Model, [known, placed]: [Self; 2]) -> Self {
+        if model.placed().is_some() { placed } else { known }
+    }
+}
+
 /// Gain in ln R0 from which a differentiated programme counts as better, when locating where it
 /// becomes so.
 const JUST_BETTER: f64 = 1e-11;
@@ -27,7 +43,7 @@ impl Model {
         let generalist = self.generalist();
         let local = self.selection_at(&generalist);
         local.iter().any(super::selection::CueSelection::is_favoured)
-            || self.best_programme(&generalist).outdoes(&generalist, JUST_BETTER)
+            || self.best_programme(&generalist).outdoes(JUST_BETTER)
     }
 }
 
@@ -42,8 +58,10 @@ pub fn local_critical<E>(
     low: f64,
     high: f64,
 ) -> Result<Option<f64>, E> {
+    let first = model_at(low)?;
+    let (start, effort) = (first.is_favoured_locally(), Effort::on(&first, [LOCAL, LOCAL_PLACED]));
     let test = |value| Ok(model_at(value)?.is_favoured_locally());
-    first_change(test, [low, high], LOCAL_LOOKS, LOCAL_HALVINGS)
+    first_change(test, start, [low, high], effort)
 }
 
 /// The value between `low` and `high` at which the global verdict changes (whether any
@@ -57,18 +75,21 @@ pub fn global_critical<E>(
     low: f64,
     high: f64,
 ) -> Result<Option<f64>, E> {
+    let first = model_at(low)?;
+    let effort = Effort::on(&first, [GLOBAL, GLOBAL_PLACED]);
+    let start = first.is_favoured_globally();
     let test = |value| Ok(model_at(value)?.is_favoured_globally());
-    first_change(test, [low, high], GLOBAL_LOOKS, GLOBAL_HALVINGS)
+    first_change(test, start, [low, high], effort)
 }
 
-/// Bisects the first of `looks` equal intervals over which `test` changes.
+/// Bisects the first of `looks` equal intervals over which `test` changes from `start`, what it is at
+/// the low end.
 fn first_change<E>(
     mut test: impl FnMut(f64) -> Result<bool, E>,
+    start: bool,
     [low, high]: [f64; 2],
-    looks: u32,
-    halvings: u32,
+    Effort { looks, halvings }: Effort,
 ) -> Result<Option<f64>, E> {
-    let start = test(low)?;
     let mut before = low;
     for look in 1..=looks {
         let share = f64::from(look) / f64::from(looks);

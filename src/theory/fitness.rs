@@ -2,11 +2,13 @@
 //!
 //! `R0 = P(reach adulthood) E[ F / (c_p m) ]`, with `F = e0 sum_i b_i` the growth rate of the
 //! propagule stock and `m = m_ext + m0 / V` the adult hazard (Mylius & Diekmann 1995, Oikos
-//! 74:218). Support is pooled: `V = mean_i v_i`.
+//! 74:218). Bodies are known by how many cells of each kind they have, all fully fed and with pooled
+//! support, `V = mean_i v_i`; or cell by cell ([`super::placed`]).
 
 use super::body::{CellKind, Composition, Compositions, average, joined};
 use super::jet::Scalar;
 use super::life_history::LifeHistory;
+use super::placed::PlacedBodies;
 use super::quadrature::{Rule, for_each_combination};
 use super::reaction_norm::{Cue, CueSet, NOISE_BIAS_BOUND, Programme};
 use super::returns::TaskReturn;
@@ -29,7 +31,7 @@ const COARSE: Fineness = Fineness { enumerated: 65.0, nodes: [12, 6, 4, 3] };
 const SKETCHED: usize = 3;
 
 /// All that theory needs of a scenario.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone)]
 pub struct Model {
     pub(super) life: LifeHistory,
     pub(super) viability: TaskReturn,
@@ -39,6 +41,7 @@ pub struct Model {
     pub(super) noise_bias_bound: f64,
     pub(super) germ_below: f64,
     pub(super) soma_above: f64,
+    pub(super) placed: Option<PlacedBodies>,
     bodies: Compositions,
     fineness: Fineness,
 }
@@ -69,9 +72,21 @@ impl Model {
             noise_bias_bound: NOISE_BIAS_BOUND,
             germ_below: 0.1,
             soma_above: 0.9,
+            placed: None,
             bodies,
             fineness: FINE,
         }
+    }
+
+    /// The same model of colonies whose bodies are known cell by cell.
+    #[must_use]
+    pub fn of_placed(
+        life: LifeHistory,
+        returns: [TaskReturn; 2],
+        cues: CueSet,
+        bodies: PlacedBodies,
+    ) -> Self {
+        Self { placed: Some(bodies), ..Self::new(life, returns, cues, &[]) }
     }
 
     /// The same with `g0` and every `g_k` within +-`bound`, the noise cue's bias within its own.
@@ -95,6 +110,7 @@ impl Model {
         if sketch.bodies.len() > SKETCHED {
             sketch.bodies = vec![(1.0, average(&self.bodies))];
         }
+        sketch.placed = self.placed.as_ref().map(PlacedBodies::sketch);
         sketch
     }
 
@@ -104,10 +120,16 @@ impl Model {
         &self.life
     }
 
-    /// The adult bodies with their probabilities, as cells see them.
+    /// The adult bodies with their probabilities, as cells see them; none where bodies are placed.
     #[must_use]
     pub fn bodies(&self) -> &[(f64, Composition)] {
         &self.bodies
+    }
+
+    /// The placed bodies, if bodies are known cell by cell.
+    #[must_use]
+    pub const fn placed(&self) -> Option<&PlacedBodies> {
+        self.placed.as_ref()
     }
 
     /// Expected propagules per founder (R0) of a programme. 0 where it cannot grow up.
@@ -128,6 +150,9 @@ impl Model {
         let relative = self.life.relative_income(norm.total_responsiveness());
         if relative.value() <= 0.0 {
             return S::constant(0.0);
+        }
+        if let Some(placed) = &self.placed {
+            return self.placed_r0(placed, norm, relative);
         }
         let grown = self.life.survival_to_adulthood(relative * self.life.income_eu_per_h);
         let output = self.bodies.iter().fold(S::constant(0.0), |sum, (weight, body)| {
@@ -194,7 +219,7 @@ impl Model {
     }
 
     /// `B V / (m_ext V + m0)`, which is 0 where V is 0.
-    fn lifetime_output<S: Scalar>(&self, v: S, b: S) -> S {
+    pub(super) fn lifetime_output<S: Scalar>(&self, v: S, b: S) -> S {
         if v.value() <= 0.0 {
             return S::constant(0.0);
         }
@@ -262,13 +287,37 @@ impl From<&Programme> for Norm<f64> {
 
 impl<S: Scalar> Norm<S> {
     /// `sum_k |g_k|`.
-    fn total_responsiveness(&self) -> S {
+    pub(super) fn total_responsiveness(&self) -> S {
         self.responsiveness.iter().fold(S::constant(0.0), |sum, g| sum + g.abs())
     }
 
     /// Whether luck plays no part.
     pub(super) fn is_deterministic(&self) -> bool {
         self.responsiveness[Cue::Noise.index()].is_zero()
+    }
+
+    /// The same without the noise cue.
+    pub(super) fn without_noise(&self) -> Self {
+        let mut still = *self;
+        still.responsiveness[Cue::Noise.index()] = S::constant(0.0);
+        still
+    }
+
+    /// The same without derivatives.
+    pub(super) fn values(&self) -> Norm<f64> {
+        Norm {
+            baseline: self.baseline.value(),
+            responsiveness: self.responsiveness.map(S::value),
+            noise_probability: self.noise_probability,
+        }
+    }
+
+    /// Logit of the soma share of a cell that reads `cues`, but for noise.
+    pub(super) fn logit_of(&self, cues: &[f64; Cue::COUNT]) -> S {
+        let positional = Cue::ALL.into_iter().filter(|cue| *cue != Cue::Noise);
+        positional.fold(self.baseline, |sum, cue| {
+            sum + self.responsiveness[cue.index()] * cues[cue.index()]
+        })
     }
 
     /// Logit of the soma share but for noise. All cells being fully fed, the income cue reads 0.

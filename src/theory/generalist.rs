@@ -31,21 +31,41 @@ const EQUAL: f64 = 1e-13;
 
 impl Model {
     /// Generation time of a population of generalists, h: growth, and the mean age of an adult at
-    /// the birth of its propagules, `1 / m` at the constant hazard `m = m_ext + m0 / V`.
+    /// the birth of its propagules, `1 / m` at the constant hazard `m = m_ext + m0 / V`; of placed
+    /// bodies, with the mean viability of those that mature.
     ///
     /// Infinite where the generalist cannot grow up or never dies.
     #[must_use]
     pub fn generation_h(&self, generalist: &Generalist) -> f64 {
+        if let Some(placed) = &self.placed {
+            let norm = Norm::from(&generalist.programme());
+            let viability = self.placed_viability(placed, &norm);
+            return self.generation_at(viability);
+        }
         let effect: f64 = self
             .bodies()
             .iter()
             .map(|(weight, body)| weight * body.mean(|kind| self.viability.effect(kind.exposed)))
             .sum();
         let viability = effect * self.viability.curve.value(generalist.soma_share);
-        let growth_h = self.life.growth_h(self.life.income_eu_per_h).unwrap_or(f64::INFINITY);
+        self.generation_at(viability)
+    }
+
+    fn generation_at(&self, viability: f64) -> f64 {
+        let growth_h = self.growth_h().unwrap_or(f64::INFINITY);
         let hazard_per_h =
             self.life.extrinsic_hazard_per_h + self.life.adult_hazard_per_h / viability;
         growth_h + 1.0 / hazard_per_h
+    }
+
+    /// Mean time from propagule to adult without a tax on responsiveness, h; `None` where nothing
+    /// grows up.
+    #[must_use]
+    pub fn growth_h(&self) -> Option<f64> {
+        match &self.placed {
+            Some(placed) => placed.growth_h(),
+            None => self.life.growth_h(self.life.income_eu_per_h),
+        }
     }
 
     /// The generalist optimum within +-bound: the best point of a grid over the logit, refined by

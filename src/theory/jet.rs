@@ -21,6 +21,15 @@ pub trait Scalar:
     /// The number itself, without derivatives.
     fn value(self) -> f64;
 
+    /// How many numbers it is made of: the value, and derivatives if it has any.
+    const PARTS: usize;
+
+    /// One of these numbers: value, slope, curvature.
+    fn part(self, which: usize) -> f64;
+
+    /// The number made of these parts.
+    fn of_parts(part: impl Fn(usize) -> f64) -> Self;
+
     /// Whether the number is 0 and does not vary.
     fn is_zero(self) -> bool;
 
@@ -70,6 +79,16 @@ impl Scalar for f64 {
         self
     }
 
+    const PARTS: usize = 1;
+
+    fn part(self, _which: usize) -> f64 {
+        self
+    }
+
+    fn of_parts(part: impl Fn(usize) -> f64) -> Self {
+        part(0)
+    }
+
     fn is_zero(self) -> bool {
         self == 0.0
     }
@@ -109,6 +128,16 @@ impl Scalar for Jet {
 
     fn value(self) -> f64 {
         self.value
+    }
+
+    const PARTS: usize = 3;
+
+    fn part(self, which: usize) -> f64 {
+        [self.value, self.slope, self.curvature][which]
+    }
+
+    fn of_parts(part: impl Fn(usize) -> f64) -> Self {
+        Self { value: part(0), slope: part(1), curvature: part(2) }
     }
 
     fn is_zero(self) -> bool {

@@ -43,14 +43,21 @@ impl LifeHistory {
     /// `division_cost / (income - upkeep)`, and there are `ceil(log2(n / propagule_cells))`.
     #[must_use]
     pub fn growth_h<S: Scalar>(&self, income: S) -> Option<S> {
-        let (whole, dividing) = rounds(self.adult_cells, self.propagule_cells);
-        let rounds = f64::from(whole) + f64::from(u8::from(dividing > 0));
-        if rounds == 0.0 {
+        let spent = self.rounds_cost_eu();
+        if spent == 0.0 {
             return Some(S::constant(0.0));
         }
         let saved = income - S::constant(self.upkeep_eu_per_h);
         let grows = saved.value() > 0.0;
-        grows.then(|| S::constant(rounds * self.division_cost_eu) / saved)
+        grows.then(|| S::constant(spent) / saved)
+    }
+
+    /// What a cell saves for divisions from propagule to adult if cells divide in step, eu.
+    #[must_use]
+    pub fn rounds_cost_eu(&self) -> f64 {
+        let (whole, dividing) = rounds(self.adult_cells, self.propagule_cells);
+        let rounds = f64::from(whole) + f64::from(u8::from(dividing > 0));
+        rounds * self.division_cost_eu
     }
 
     /// Probability that a propagule becomes an adult colony, `exp(-juvenile_hazard growth_h)`;

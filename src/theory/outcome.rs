@@ -29,6 +29,11 @@ impl Model {
         for (weight, body) in self.bodies() {
             self.tally_body(&norm, body, *weight, &mut tally);
         }
+        if let Some(placed) = &self.placed {
+            placed.for_each_mature_body(&norm, |cells, probability| {
+                tally.add(self.classify(cells, false), cells, probability);
+            });
+        }
         let likelihood = |class: &BodyClass| tally.classes[*class as usize];
         let commonest = BodyClass::ALL.into_iter().rev();
         let commonest = commonest.max_by(|a, b| likelihood(a).total_cmp(&likelihood(b)));

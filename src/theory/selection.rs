@@ -71,15 +71,19 @@ pub struct CueSelection {
     pub curvature: f64,
     /// Change of ln R0 per unit of |g| on the better side.
     rise: f64,
+    /// What the sampling of bodies can make of a first and a second derivative.
+    slack: [f64; 2],
 }
 
 impl CueSelection {
-    /// The verdict at [`SELECTION_TOLERANCE`].
+    /// The verdict at [`SELECTION_TOLERANCE`]; where bodies are a sample that differ, derivatives that
+    /// are within 4 of their standard errors count as 0.
     #[must_use]
     pub fn verdict(&self) -> Verdict {
-        if self.rise > SELECTION_TOLERANCE {
+        let bent = SELECTION_TOLERANCE.max(self.slack[1]);
+        if self.rise > self.level() {
             Verdict::FavouredAtOnce
-        } else if self.is_level() && self.curvature > SELECTION_TOLERANCE {
+        } else if self.is_level() && self.curvature > bent {
             Verdict::FavouredByDisruption
         } else {
             Verdict::NotFavouredLocally
@@ -90,11 +94,15 @@ impl CueSelection {
     /// carries (for locating where that changes).
     pub(super) fn is_favoured(&self) -> bool {
         const ROUNDING: f64 = 1e-12;
-        self.rise > SELECTION_TOLERANCE || (self.is_level() && self.curvature > ROUNDING)
+        self.rise > self.level() || (self.is_level() && self.curvature > ROUNDING)
     }
 
     fn is_level(&self) -> bool {
-        self.rise.abs() <= SELECTION_TOLERANCE
+        self.rise.abs() <= self.level()
+    }
+
+    const fn level(&self) -> f64 {
+        SELECTION_TOLERANCE.max(self.slack[0])
     }
 }
 
@@ -109,21 +117,29 @@ impl Model {
     fn selection_on(&self, cue: Cue, generalist: &Generalist) -> CueSelection {
         if generalist.r0 <= 0.0 {
             let unknown = f64::NAN;
-            return CueSelection { cue, gradient: unknown, curvature: unknown, rise: unknown };
+            let slack = [0.0; 2];
+            return CueSelection {
+                cue,
+                gradient: unknown,
+                curvature: unknown,
+                rise: unknown,
+                slack,
+            };
         }
-        let along = |direction: f64| {
+        let norm = |direction: f64| {
             let mut responsiveness = [Jet::constant(0.0); Cue::COUNT];
             responsiveness[cue.index()] = Jet::variable(0.0, direction);
             let baseline = Jet::constant(generalist.baseline);
-            self.r0(&Norm { baseline, responsiveness, noise_probability: 0.5 }).ln()
+            Norm { baseline, responsiveness, noise_probability: 0.5 }
         };
-        let (up, down) = (along(1.0), along(-1.0));
-        if down.slope > up.slope {
-            let gradient = -down.slope;
-            CueSelection { cue, gradient, curvature: down.curvature, rise: down.slope }
-        } else {
-            CueSelection { cue, gradient: up.slope, curvature: up.curvature, rise: up.slope }
-        }
+        let slack = match &self.placed {
+            Some(placed) => self.slack_of_derivatives(placed, &norm(1.0)),
+            None => [0.0; 2],
+        };
+        let [up, down] = [1.0, -1.0].map(|direction| self.r0(&norm(direction)).ln());
+        let (better, sign) = if down.slope > up.slope { (down, -1.0) } else { (up, 1.0) };
+        let (gradient, curvature) = (sign * better.slope, better.curvature);
+        CueSelection { cue, gradient, curvature, rise: better.slope, slack }
     }
 
     /// The overall verdict from the local ones: the strongest, and `valley` where none favours a

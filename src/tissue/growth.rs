@@ -15,7 +15,7 @@ use super::lattice::Lattice;
 use super::placement::{Crowd, Newcomer};
 
 /// Least cost of a division as a share of its mean, where costs vary.
-const LEAST_COST_SHARE: f64 = 0.01;
+pub(super) const LEAST_COST_SHARE: f64 = 0.01;
 
 /// Label of a cell that its last division made a mother.
 const MOTHER: i8 = -1;

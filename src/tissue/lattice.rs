@@ -96,7 +96,7 @@ impl Lattice {
     /// Position of a place relative to the body's centre, um.
     #[must_use]
     pub fn position_um(&self, place: u32, cell_diameter_um: f64) -> [f64; 3] {
-        self.coordinates(place).map(|c| f64::from(c) * cell_diameter_um / SQRT_2)
+        site_position_um(self.coordinates(place).map(i32::from), cell_diameter_um)
     }
 
     /// The 12 places next to `place`.
@@ -121,6 +121,11 @@ impl Lattice {
     /// The largest difference of a coordinate between two sites of a body.
     pub(super) const fn span(&self) -> usize {
         (self.side - 1 - 2 * MARGIN).unsigned_abs() as usize
+    }
+
+    /// Places along an edge of the grid.
+    pub(super) const fn side(&self) -> i32 {
+        self.side
     }
 
     /// Difference of grid places per unit step along each axis.
@@ -170,6 +175,12 @@ fn cut_into_shells(sites: &[(i32, [i32; 3])], cells: usize) -> (Vec<Vec<[i32; 3]
 fn grid_coordinates(half: i32) -> Vec<[i8; 3]> {
     let axis = || (-half..=half).map(|c| i8::try_from(c).unwrap_or(i8::MAX));
     axis().flat_map(|z| axis().flat_map(move |y| axis().map(move |x| [x, y, z]))).collect()
+}
+
+/// Position of the site with those coordinates, um; a coordinate unit is `d / sqrt(2)`.
+#[must_use]
+pub fn site_position_um(site: [i32; 3], cell_diameter_um: f64) -> [f64; 3] {
+    site.map(|c| f64::from(c) * cell_diameter_um / SQRT_2)
 }
 
 /// Radius of the ball whose volume is that of `cells` lattice sites, um.

@@ -4,9 +4,12 @@
 //! `s * n .. (s + 1) * n` of the one table of cells; colonies likewise are rows of theirs. A dead
 //! colony's rows are overwritten by the next.
 
+use std::ops::Range;
+
 use bevy_ecs::prelude::*;
 
-/// Where a cell lies in its colony's body: a place of the body's lattice.
+/// Where a cell lies in its colony's body: a place of the body's lattice, or the cell's number in a
+/// shared body.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct Place(pub u32);
 
@@ -43,6 +46,11 @@ pub struct Budget {
     pub germ_eu_per_h: f32,
 }
 
+/// What a cell receives of the viability task's product where support is local; where it is pooled,
+/// the colony's viability says the same for all cells.
+#[derive(Component, Debug, Clone, Copy, Default)]
+pub struct Support(pub f32);
+
 /// What a cell's budgets yield (dimensionless).
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct Output {
@@ -73,6 +81,8 @@ pub struct CellBundle {
     pub budget: Budget,
     /// Its yields.
     pub output: Output,
+    /// What it receives.
+    pub support: Support,
 }
 
 /// Where a colony stands in its life; a dead colony leaves its site empty.
@@ -108,6 +118,14 @@ impl Default for Lifespan {
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct CellCount(pub u32);
 
+impl CellCount {
+    /// Rows of the cells of the colony of `site`, where each site has room for `capacity` cells.
+    #[must_use]
+    pub const fn rows(self, site: usize, capacity: usize) -> Range<usize> {
+        site * capacity..site * capacity + self.0 as usize
+    }
+}
+
 /// Body means by which an adult's cues are centred.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct CueMeans {
@@ -130,7 +148,8 @@ pub struct Vitals {
     pub hazard_per_h: f64,
 }
 
-/// When a colony's stock for propagules begins to grow: its adulthood, h.
+/// When a colony's stock for propagules begins to grow as it does: its adulthood, or the last
+/// replacement of a cell, h.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct StockSince(pub f64);
 
@@ -138,8 +157,9 @@ pub struct StockSince(pub f64);
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct StockUntil(pub f64);
 
-/// Stock at adulthood, in propagules: uniform on [-1/2, 1/2), so that a life, whose propagules are
-/// counted to the nearest whole one, releases `rate * length` on average.
+/// Stock at that time, in propagules. At adulthood it is uniform on [-1/2, 1/2), so that a life, whose
+/// propagules are counted to the nearest whole one, releases `rate * length` on average; later it is
+/// what is left over.
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct HeadStart(pub f64);
 
@@ -147,16 +167,17 @@ pub struct HeadStart(pub f64);
 #[derive(Component, Debug, Clone, Copy, Default)]
 pub struct StockRate(pub f64);
 
-/// A colony's stock for propagules, from the adulthood of the last adult that lived on its site.
+/// A colony's stock for propagules, from the adulthood (or the last replacement of a cell) of the last
+/// adult that lived on its site.
 ///
 /// One column per number, since all sites are gone through at every tick.
 #[derive(Bundle, Debug, Clone, Copy, Default)]
 pub struct PropaguleStock {
-    /// Adulthood.
+    /// Adulthood, or the last replacement.
     pub since: StockSince,
     /// Death.
     pub until: StockUntil,
-    /// What there is at adulthood.
+    /// What there is then.
     pub head_start: HeadStart,
     /// Its growth.
     pub rate: StockRate,
@@ -170,6 +191,14 @@ impl PropaguleStock {
     #[inline]
     pub const fn released_between(&self, from_h: f64, to_h: f64) -> u64 {
         whole(self.at(to_h)).wrapping_sub(whole(self.at(from_h)))
+    }
+
+    /// What the stock holds at `hour` beyond whole propagules, between -1/2 and 1/2: the stock of one
+    /// that goes on from there.
+    #[must_use]
+    pub fn left_over(&self, hour: f64) -> f64 {
+        let level = self.at(hour);
+        level - level.round_ties_even()
     }
 
     /// The stock at `hour` of all that life has put into it, in propagules.

@@ -8,19 +8,24 @@ use rand_xoshiro::Xoshiro256PlusPlus;
 
 use crate::scenario::Settings;
 use crate::theory::Programme;
-use crate::tissue::{Growth, Pace};
+use crate::tissue::Pace;
 
 /// The scenario, as the mechanisms read it.
 #[derive(Resource, Debug, Clone)]
 pub struct Rules(pub Settings);
 
 impl Rules {
-    /// Income of a fully fed cell of a programme after the tax on responsiveness, eu/h:
-    /// `e = e0 max(0, 1 - cost_per_unit * sum_k |g_k|)`.
+    /// Share of their income that cells of a programme keep from the tax on responsiveness:
+    /// `max(0, 1 - cost_per_unit * sum_k |g_k|)`.
+    #[must_use]
+    pub fn kept_share(&self, programme: &Programme) -> f64 {
+        (1.0 - self.0.traits.cost_per_unit * programme.total_responsiveness()).max(0.0)
+    }
+
+    /// Income of a fully fed cell of a programme after tax, eu/h.
     #[must_use]
     pub fn taxed_income_eu_per_h(&self, programme: &Programme) -> f64 {
-        let tax = self.0.traits.cost_per_unit * programme.total_responsiveness();
-        self.0.budget.income_eu_per_h * (1.0 - tax).max(0.0)
+        self.0.budget.income_eu_per_h * self.kept_share(programme)
     }
 
     /// How fast the cells of a programme save while they grow.
@@ -38,10 +43,6 @@ impl Rules {
 /// The replicate's one source of randomness.
 #[derive(Resource, Debug, Clone)]
 pub struct Random(pub Xoshiro256PlusPlus);
-
-/// Working memory in which bodies grow.
-#[derive(Resource, Debug, Clone)]
-pub struct Nursery(pub Growth);
 
 /// The hours of the tick at hand, and generations so far.
 #[derive(Resource, Debug, Clone)]
@@ -86,6 +87,7 @@ impl PartialOrd for Event {
 pub struct Calendar {
     adulthoods: BinaryHeap<Reverse<Event>>,
     deaths: BinaryHeap<Reverse<Event>>,
+    replacements: BinaryHeap<Reverse<Event>>,
 }
 
 impl Calendar {
@@ -99,14 +101,17 @@ impl Calendar {
         self.deaths.push(Reverse(event));
     }
 
+    /// Notes that a cell of the colony of `event.site` will be replaced then.
+    pub fn expect_replacement(&mut self, event: Event) {
+        self.replacements.push(Reverse(event));
+    }
+
     /// When the next event is due, h; none when nobody is alive.
     #[must_use]
     pub fn next_event_h(&self) -> Option<f64> {
         let first = |queue: &BinaryHeap<Reverse<Event>>| queue.peek().map(|next| next.0.at_h);
-        match (first(&self.adulthoods), first(&self.deaths)) {
-            (Some(adulthood_h), Some(death_h)) => Some(adulthood_h.min(death_h)),
-            (adulthood_h, death_h) => adulthood_h.or(death_h),
-        }
+        let all = [&self.adulthoods, &self.deaths, &self.replacements];
+        all.into_iter().filter_map(first).reduce(f64::min)
     }
 
     /// The next colony to be adult by `now_h`.
@@ -117,6 +122,11 @@ impl Calendar {
     /// The next colony to be dead by `now_h`.
     pub fn next_death(&mut self, now_h: f64) -> Option<Event> {
         pop_due(&mut self.deaths, now_h)
+    }
+
+    /// The next colony with a cell to be replaced by `now_h`.
+    pub fn next_replacement(&mut self, now_h: f64) -> Option<Event> {
+        pop_due(&mut self.replacements, now_h)
     }
 }
 
@@ -135,6 +145,16 @@ pub struct Genotype {
     pub programme: Programme,
     /// Which founder of the population it descends from.
     pub founder: u32,
+    /// Neutral marker that never recurs; on a torus a settler now and then starts a new one.
+    pub line: u64,
+}
+
+impl Genotype {
+    /// What the propagule that founds site `site` of a population carries: a line of its own.
+    #[must_use]
+    pub fn of_founder(programme: Programme, site: u32) -> Self {
+        Self { programme, founder: site, line: u64::from(site) }
+    }
 }
 
 /// The genotypes cells carry; while bodies are clonal, entry s belongs to the colony of site s.
@@ -156,6 +176,24 @@ pub struct Released {
     pub by_site: Vec<u32>,
     /// Over all sites.
     pub total: u64,
+}
+
+/// Propagules that adults released before the last change of their stock's growth; none where cells
+/// are not replaced.
+#[derive(Resource, Debug, Clone, Default)]
+pub struct EarlierReleases {
+    /// Since the colony's adulthood, by site.
+    pub of_life: Vec<u64>,
+    /// In this tick: sites and numbers, a site as often as its stock changed.
+    pub of_tick: Vec<(u32, u64)>,
+}
+
+impl EarlierReleases {
+    /// Nothing has been released in this tick yet; there are so many sites.
+    pub fn begin_tick(&mut self, sites: usize) {
+        self.of_tick.clear();
+        self.of_life.resize(sites, 0);
+    }
 }
 
 /// A propagule that has found an empty site.
@@ -180,6 +218,10 @@ pub struct Ledger {
     pub settlements: u64,
     /// Colonies that died.
     pub deaths: u64,
+    /// Cells of adults that were replaced.
+    pub replacements: u64,
+    /// Colonies that settled and whose growth stops short of adult size.
+    pub never_matured: u64,
     /// Propagules released over their whole life by colonies that died.
     pub lifetime_propagules: u64,
     /// Parents' ages at the settlements since the last census, h.

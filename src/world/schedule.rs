@@ -4,7 +4,7 @@ use bevy_ecs::prelude::*;
 use bevy_ecs::schedule::{LogLevel, ScheduleBuildSettings, SingleThreadedExecutor};
 
 use super::mechanisms::{
-    ageing, budgets, clock, cues, growth, maturity, reproduction, settlement, support,
+    ageing, budgets, clock, cues, growth, maturity, reproduction, settlement, support, turnover,
 };
 
 /// The schedule of a tick: a total order; an ambiguous pair of systems is an error when it is built.
@@ -22,8 +22,11 @@ pub fn tick_schedule() -> Schedule {
             maturity::wake_juveniles,
             cues::read_cues,
             budgets::split_budgets,
+            turnover::charge_replacements,
             support::pool_support,
+            support::spread_support,
             ageing::set_lifespans,
+            turnover::replace_cells,
             ageing::bury_colonies,
             reproduction::release_propagules,
             settlement::settle_propagules,

@@ -13,7 +13,7 @@ cell_diameter_um = 100.0
 cues = [\"noise\", \"lineage\", \"exposure\"]
 ";
 
-fn check(settings: &[&str]) -> Value {
+pub(crate) fn check(settings: &[&str]) -> Value {
     let set: Vec<&str> = settings.iter().flat_map(|setting| ["--set", setting]).collect();
     let arguments = [&["check", "pond.toml", "--json"], set.as_slice()].concat();
     let ran = Desk::with(CALM_POND).run(&arguments);
@@ -21,7 +21,7 @@ fn check(settings: &[&str]) -> Value {
     serde_json::from_str(&ran.out).expect("one JSON document")
 }
 
-fn warnings(settings: &[&str]) -> Vec<String> {
+pub(crate) fn warnings(settings: &[&str]) -> Vec<String> {
     let document = check(settings);
     let list = document["warnings"].as_array().expect("a list");
     let text = |value: &Value| value.as_str().expect("a text").to_owned();

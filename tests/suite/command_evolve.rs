@@ -23,7 +23,7 @@ fn a_run_leaves_its_five_files_and_a_lock() {
     let rows = lines(&desk, "run/replicates.csv");
     let columns = "replicate,seed,outcome,onset_generation,end_generation,division_index,\
                    soma_fraction,class,route_noise,route_lineage,route_exposure,route_income,\
-                   mean_fitness";
+                   mean_fitness,adult_cells,never_matured";
     assert_eq!((rows[0].as_str(), rows.len()), (columns, 4));
 }
 
@@ -32,7 +32,16 @@ fn the_summary_is_printed_as_it_is_stored_with_the_fields_of_the_contract() {
     let desk = Desk::with(SMALL_POND);
     let printed = desk.evolve_into("run", &[]);
     assert_eq!(printed, desk.json("run/summary.json"));
-    let all = ["extinct", "final", "onset", "prediction", "replicates", "throughput", "title"];
+    let all = [
+        "extinct",
+        "final",
+        "never_matured",
+        "onset",
+        "prediction",
+        "replicates",
+        "throughput",
+        "title",
+    ];
     assert_eq!(keys(&printed), all);
     let onset = [
         "count",
@@ -45,6 +54,7 @@ fn the_summary_is_printed_as_it_is_stored_with_the_fields_of_the_contract() {
     ];
     assert_eq!(keys(&printed["onset"]), onset);
     let last = [
+        "adult_cells",
         "class",
         "division_index",
         "division_index_high",

@@ -80,7 +80,7 @@ fn seed_and_set_replace_settings() {
 fn templates_are_listed_and_printed() {
     let desk = Desk::new();
     let list = desk.run(&["template"]);
-    assert_eq!((list.code, list.out.lines().count()), (0, 7));
+    assert_eq!((list.code, list.out.lines().count()), (0, 10));
     for line in list.out.lines() {
         let name = line.split_whitespace().next().expect("a name");
         let ran = desk.run(&["template", name]);

@@ -58,6 +58,23 @@ fn exactly_the_fields_of_the_contract() {
     assert_eq!(cues.len(), 3);
 }
 
+/// Bodies in space are a sample: the list and the document say of what.
+#[test]
+fn spatial_scenarios_say_what_their_numbers_rest_on() {
+    let space = format!("{POND}\n[support]\nrange_diameters = 1.5\n");
+    let desk = Desk::with(&space);
+    let ran = desk.run(&["predict", "pond.toml"]);
+    assert_eq!((ran.code, ran.err.as_str()), (0, ""));
+    let line = ran.out.lines().find(|line| line.starts_with("the numbers rest on"));
+    let line = line.unwrap_or_else(|| panic!("{}", ran.out));
+    assert!(line.contains("bodies grown, 100 % of which matured, 256 random fates each"), "{line}");
+    let ran = desk.run(&["predict", "pond.toml", "--json"]);
+    let document: Value = serde_json::from_str(&ran.out).expect("one JSON document");
+    let sampling = ["bodies", "fates", "gain_error", "maturing_share"];
+    assert_eq!(keys(&document["sampling"]), sampling);
+    assert!(document["sampling"]["gain_error"].as_f64().is_some_and(|error| error > 0.0));
+}
+
 /// Where no generalist leaves a propagule, ln R0 has no derivatives.
 #[test]
 fn numbers_that_do_not_exist_are_null() {

@@ -147,21 +147,66 @@ fn points_of_a_measured_curve() {
 #[test]
 fn later_work_is_named_and_not_ignored() {
     for (text, saying) in [
-        ("[support]\nrange_diameters = 2.0", "`support` is not built yet"),
-        ("[nutrient]\nbath_mM = 0.05", "`nutrient` is not built yet"),
-        ("[waste]\ntoxic_mM = 0.05", "`waste` is not built yet"),
         ("[scan]\nreplicates = 2", "`scan` is not built yet"),
         ("[[scan.axis]]\nkeys = []", "`scan` is not built yet"),
-        ("[habitat]\nlayout = \"torus\"", "`habitat.layout = \"torus\"` is not built yet"),
-        ("[habitat]\ndispersal_sites = 1.5", "`habitat.dispersal_sites` is not built yet"),
-        ("[body]\nplan = \"chain\"", "`body.plan = \"chain\"` is not built yet"),
-        ("[body]\nplan = \"tree\"", "`body.plan = \"tree\"` is not built yet"),
-        ("[body]\nplan = \"shell\"", "`body.plan = \"shell\"` is not built yet"),
-        ("[traits]\ncues = [\"income\"]", "`traits.cues = \"income\"` is not built yet"),
-        ("[traits.start]\nincome = 1.0", "`traits.start.income` is not built yet"),
+        ("[traits]\ncues = [\"neighbours\"]", "`traits.cues = \"neighbours\"` is not built yet"),
+        ("[traits.start]\nneighbours = 1.0", "`traits.start.neighbours` is not built yet"),
     ] {
         refuses(text, &[saying, "[pond.toml:"]);
     }
+}
+
+#[test]
+fn space_out_of_range() {
+    for (text, saying) in [
+        ("[support]\nrange_diameters = -1", "`support.range_diameters` = -1 is out of range"),
+        (
+            "[support]\nleak = 1.5",
+            "`support.leak` = 1.5 is out of range; it must be a number from 0",
+        ),
+        ("[nutrient]\nbath_mM = 0", "`nutrient.bath_mM` = 0 is out of range"),
+        ("[nutrient]\nhalf_saturation_mM = 0", "`nutrient.half_saturation_mM` = 0 is out of"),
+        ("[nutrient]\nuptake_fmol_per_h = 0", "must be a number from 0.000000001 to 1000000000"),
+        ("[nutrient]\ndiffusivity_um2_per_s = 0", "`nutrient.diffusivity_um2_per_s` = 0 is out"),
+        ("[nutrient]\nexchange = inf", "`nutrient.exchange` = inf is not a finite number"),
+        ("[waste]\nrelease_fmol_per_h = 0", "`waste.release_fmol_per_h` = 0 is out of range"),
+        ("[waste]\ntoxic_mM = 0.0", "`waste.toxic_mM` = 0.0 is out of range"),
+        ("[waste]\nexchange = -1", "`waste.exchange` = -1 is out of range"),
+        ("[budget]\nstarvation_h = -1", "`budget.starvation_h` = -1 is out of range"),
+        ("[budget]\nturnover_per_h = 10.1", "`budget.turnover_per_h` = 10.1 is out of range"),
+        ("[budget]\nturnover_per_h = nan", "`budget.turnover_per_h` = nan is not a finite number"),
+    ] {
+        refuses(text, &[saying, "[pond.toml:3:"]);
+    }
+    refuses("[support]\nrange = 2", &["unknown key", "did you mean `support.range_diameters`?"]);
+    refuses("[suport]\nleak = 0", &["unknown key `suport`", "did you mean `support`?"]);
+    refuses("waste = true", &["`waste` = true is true or false, but `waste` is a table"]);
+    refuses("[nutrient]\nbath_mm = 1", &["did you mean `nutrient.bath_mM`?"]);
+    refuses("[body]\nplan = \"ball\"", &["must be \"clump\", \"chain\", \"tree\" or \"shell\""]);
+}
+
+#[test]
+fn a_torus_is_a_square() {
+    let torus = "[habitat]\nlayout = \"torus\"\n";
+    refuses(
+        &format!("{torus}sites = 250"),
+        &[
+            "`habitat.sites` = 250 is no square number",
+            "the nearest squares are 225 and 256",
+            "[pond.toml:4:9]",
+        ],
+    );
+    refuses(&format!("{torus}dispersal_sites = 0"), &["must be a number above 0"]);
+    refuses(
+        "[habitat]\ndispersal_sites = 2",
+        &[
+            "`habitat.dispersal_sites` belongs to layout = \"torus\"",
+            "but here habitat.layout = \"mixed\"",
+        ],
+    );
+    // A faulty number of sites is told once.
+    let message = refuses(&format!("{torus}sites = 3"), &["`habitat.sites` = 3 is out of range"]);
+    assert!(!message.contains("square number"), "{message}");
 }
 
 #[test]
@@ -185,8 +230,8 @@ fn files_that_are_no_scenario() {
 #[test]
 fn every_fault_of_a_file_is_told_at_once() {
     let text = "[habitat]\nsites = 1\nsize = 3\n[body]\nadult_cells = -5\n[life]\n\
-                adult_hazard_per_h = nan\n[traits]\ncues = [\"noise\", \"noise\"]\n[support]\n\
-                leak = 0";
+                adult_hazard_per_h = nan\n[traits]\ncues = [\"noise\", \"noise\"]\n[scan]\n\
+                replicates = 0";
     let message = refuses(text, &["has 6 faults"]);
     insta::assert_snapshot!("six_faults", message);
     let message = refuses("seed = \n[body\nadult_cells = 0\n[habitat]\nsites = 1", &[]);
@@ -219,11 +264,13 @@ fn wrong_overrides_show_their_own_text() {
     refuses("traits.cues=[\"noise\"", &["not valid TOML", "[--set:1:"]);
     refuses("traits.cues=noise", &["`traits.cues` = noise is a text; it must be a list"]);
     refuses("life.adult_hazard_per_h=nan", &["= nan is not a finite number"]);
-    refuses("support.leak=0.5", &["`support` is not built yet"]);
+    refuses("support.leak=1.5", &["`support.leak` = 1.5 is out of range"]);
+    refuses("support={}", &["`support` is a table", "set its keys one by one"]);
+    refuses("scan.replicates=2", &["`scan` is not built yet"]);
     let seed =
         desk.refuses(&["--seed", "18446744073709551615"], &["`seed` = 18446744073709551615"]);
     assert!(seed.contains("[--seed:1:6]"), "{seed}");
     // Faults of the file and of several overrides come together.
     let both = Desk::with("title = \"Pond\"\n[habitat]\nsites = 2");
-    both.refuses(&["--set", "seed=x", "--set", "body.plan=tree"], &["has 3 faults"]);
+    both.refuses(&["--set", "seed=x", "--set", "body.plan=bush"], &["has 3 faults"]);
 }

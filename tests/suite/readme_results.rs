@@ -1,5 +1,5 @@
 //! README's results are those of real runs. `SOMADAWN_BLESS=1 cargo test --release readme_` writes them
-//! anew after a change that alters results; with `SOMADAWN_LONG=1` as well, all six scenarios are run.
+//! anew after a change that alters results; with `SOMADAWN_LONG=1` as well, all scenarios are run.
 
 use std::process::Command;
 

@@ -74,11 +74,21 @@ fn the_csv_is_as_promised() {
     assert_eq!(
         lines[0],
         "replicate,seed,outcome,onset_generation,end_generation,division_index,soma_fraction,\
-         class,route_noise,route_lineage,route_exposure,route_income,mean_fitness"
+         class,route_noise,route_lineage,route_exposure,route_income,mean_fitness,\
+         adult_cells,never_matured"
     );
-    assert_eq!(lines[1], "0,18446744073709551615,onset,100.0,1500.0,0.9,0.5,complete,1.0,,,,1.25");
-    assert_eq!(lines[2], "1,18446744073709551614,censored,,1500.0,0.02,0.5,alike,1.0,,,,1.25");
-    assert_eq!(lines[3], "2,18446744073709551613,extinct,,40.0,0.02,0.5,partial,1.0,,,,1.25");
+    assert_eq!(
+        lines[1],
+        "0,18446744073709551615,onset,100.0,1500.0,0.9,0.5,complete,1.0,,,,1.25,60.5,3"
+    );
+    assert_eq!(
+        lines[2],
+        "1,18446744073709551614,censored,,1500.0,0.02,0.5,alike,1.0,,,,1.25,60.5,3"
+    );
+    assert_eq!(
+        lines[3],
+        "2,18446744073709551613,extinct,,40.0,0.02,0.5,partial,1.0,,,,1.25,60.5,3"
+    );
 }
 
 #[test]

@@ -32,6 +32,8 @@ pub(crate) fn censored(replicate: u32) -> ReplicateRow {
         route_exposure: None,
         route_income: None,
         mean_fitness: Some(1.25),
+        adult_cells: Some(60.5),
+        never_matured: 3,
     }
 }
 
@@ -76,6 +78,9 @@ pub(crate) fn census(replicate: u32, generation: f64, division_index: Option<f64
         founder_lines: 9,
         trait_mean: [0.1, 0.2, 0.3, 0.4, 0.5, 0.6],
         trait_variance: [1.0, 2.0, 3.0, 4.0, 5.0, 6.0],
+        adult_cells: division_index.map(|_| 60.5),
+        never_matured: 3,
+        relatedness: [Some(0.5), Some(0.25), division_index, None],
     }
 }
 

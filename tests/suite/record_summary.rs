@@ -25,6 +25,7 @@ fn onset_probability_and_median() {
     let found = summary(&eight());
     assert_eq!((found.replicates, found.onset.count, found.extinct), (8, 5, 1));
     assert_eq!(found.onset.probability, Some(0.625));
+    assert_eq!(found.never_matured, 8 * 3);
     // Wilson (1927) for 5 of 8, the formula worked out in Python.
     assert_abs_diff_eq!(found.onset.wilson_low, 0.305_742_394_603, epsilon = 1e-9);
     assert_abs_diff_eq!(found.onset.wilson_high, 0.863_155_714_176, epsilon = 1e-9);
@@ -42,6 +43,7 @@ fn the_end_is_told_of_those_that_live() {
     assert_abs_diff_eq!(found.division_index_low.unwrap(), 0.251_446_333_942, epsilon = 1e-9);
     assert_eq!(found.division_index_high, Some(1.0));
     assert_eq!(found.soma_fraction, Some(0.5));
+    assert_eq!(found.adult_cells, Some(60.5));
     assert_eq!((found.class, found.route), (Some(BodyClass::Complete), Some(Cue::Noise)));
 }
 
@@ -85,10 +87,11 @@ fn the_document_is_as_promised() {
             "median_generation": 10.0, "median_low": 10.0, "median_high": Value::Null,
         },
         "extinct": 0,
+        "never_matured": 3,
         "final": {
             "division_index": 0.9, "division_index_low": Value::Null,
             "division_index_high": Value::Null, "soma_fraction": 0.5,
-            "class": "complete", "route": "noise",
+            "adult_cells": 60.5, "class": "complete", "route": "noise",
         },
         "prediction": {"verdict": "favoured by disruption", "class": "complete"},
         "throughput": {

@@ -24,7 +24,12 @@ fn rising(replicate: u32, end: u32, top: f64) -> Vec<CensusRow> {
 fn rows() -> Vec<ReplicateRow> {
     let mut rows: Vec<_> = (0..6u32).map(|k| onset(k, f64::from(400 + 50 * k))).collect();
     rows.extend([extinct(6, 250.0), censored(7)]);
-    rows
+    rows.iter().map(|row| of_size(64.0, 0, row)).collect()
+}
+
+/// The same row, but for the size of its bodies.
+fn of_size(adult_cells: f64, never_matured: u64, row: &ReplicateRow) -> ReplicateRow {
+    ReplicateRow { adult_cells: Some(adult_cells), never_matured, ..row.clone() }
 }
 
 fn course() -> Vec<CensusRow> {
@@ -57,6 +62,7 @@ fn report(
         rows,
         census,
         replicates_planned: 8,
+        adult_cells: 64,
         circumstances,
         folder: Path::new("outputs/two  spaces"),
     };
@@ -120,6 +126,36 @@ fn no_onset_and_no_replicate() {
     let empty = report("Null", &[], &[], null, Style::PLAIN);
     assert!(empty.contains("no replicate finished"), "{empty}");
     assert!(!empty.contains("NaN") && !empty.contains("inf"), "{empty}");
+}
+
+/// Lines on adult size and on colonies that never mature, if there are any.
+fn told_of_size(rows: &[ReplicateRow]) -> Vec<String> {
+    let text = report("Hungry", rows, &rising(0, 1_500, 0.02), prediction(), Style::PLAIN);
+    let is_of_size =
+        |line: &&str| line.starts_with("Adult size") || line.starts_with("Never matured");
+    text.lines().filter(is_of_size).map(str::to_owned).collect()
+}
+
+#[test]
+fn bodies_short_of_their_size_are_told() {
+    let told = |adult_cells, never_matured| {
+        let rows = [0, 1].map(|k| of_size(adult_cells, never_matured, &censored(k)));
+        told_of_size(&rows)
+    };
+    // Means of whole numbers differ from the size by rounding at most.
+    assert_eq!(told(64.0, 0), [""; 0]);
+    assert_eq!(told(64.0_f64.next_down(), 0), [""; 0]);
+    let size = |found| format!("Adult size      adult bodies hold {found} cells on average of 64");
+    let stopped = "Never matured   1,234 colonies settled whose growth stops short of adult size";
+    assert_eq!(told(60.5, 0), [size("60.5")]);
+    assert_eq!(told(63.999, 0), [size("63.999")]);
+    assert_eq!(told(64.0, 617), [stopped]);
+    assert_eq!(told(60.5, 617), [size("60.5"), stopped.to_owned()]);
+    let lone = told_of_size(&[of_size(64.0, 1, &censored(0))]);
+    assert_eq!(lone, ["Never matured   1 colony settled whose growth stops short of adult size"]);
+    // Nobody was adult at the end.
+    let none = ReplicateRow { adult_cells: None, never_matured: 0, ..censored(0) };
+    assert_eq!(told_of_size(&[none]), [""; 0]);
 }
 
 #[test]

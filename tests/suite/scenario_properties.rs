@@ -72,12 +72,19 @@ proptest! {
         hazard in 1e-12..1e6_f64,
         exponent in 1e-6..20_f64,
         start in -12.0..12_f64,
+        range in 0.0..1e6_f64,
+        bath in 1e-6..1e5_f64,
+        dispersal in 1e-3..1e6_f64,
     ) {
         let overrides = [
             Override::seed(seed),
             Override::number("--set", "life.adult_hazard_per_h", hazard),
             Override::number("--set", "returns.fecundity.exponent", exponent),
             Override::number("--set", "traits.start.noise", start),
+            Override::number("--set", "support.range_diameters", range),
+            Override::number("--set", "nutrient.bath_mM", bath),
+            Override::set("habitat.layout=torus"),
+            Override::number("--set", "habitat.dispersal_sites", dispersal),
         ];
         let settings = read("title = 'x'", &overrides).expect("all in range");
         prop_assert_eq!(settings.seed, seed);

@@ -3,9 +3,10 @@
 #![expect(clippy::float_cmp, reason = "numbers must come through to the last bit")]
 
 use serde_json::Value;
+use somadawn::scenario::registry::{entries, tables};
 use somadawn::scenario::schema::schema;
-use somadawn::scenario::settings::{Baseline, Layout, Plan, Tick};
-use somadawn::scenario::{Fault, FaultKind, ScenarioError, Settings};
+use somadawn::scenario::settings::{Baseline, Layout, Nutrient, Plan, Support, Tick, Waste};
+use somadawn::scenario::{Fault, FaultKind, Override, ScenarioError, Settings};
 use somadawn::theory::{Cue, CueSet, ReturnCurve};
 
 fn read(text: &str) -> Result<Settings, ScenarioError> {
@@ -34,6 +35,8 @@ fn defaults_are_those_of_the_scenario_file() {
     let budget = &settings.budget;
     assert_eq!((budget.income_eu_per_h, budget.upkeep_eu_per_h), (1.0, 0.0));
     assert_eq!((budget.division_cost_eu, budget.division_cv), (8.0, 0.0));
+    assert_eq!((budget.starvation_h, budget.turnover_per_h), (24.0, 0.0));
+    assert_eq!((&settings.support, &settings.nutrient, &settings.waste), (&None, &None, &None));
     for task in [&settings.returns.viability, &settings.returns.fecundity] {
         assert_eq!(task.curve, ReturnCurve::Power { exponent: 1.0 });
         assert_eq!((task.surface_effect, task.interior_effect), (1.0, 1.0));
@@ -56,9 +59,10 @@ title = "Every key \"quoted\" and µ"
 seed = 9223372036854775807
 [habitat]
 sites = 100
-layout = "mixed"
+layout = "torus"
+dispersal_sites = 0.75
 [body]
-plan = "clump"
+plan = "tree"
 adult_cells = 33
 cell_diameter_um = 7
 [life]
@@ -72,12 +76,28 @@ income_eu_per_h = 2.5
 upkeep_eu_per_h = 0.3
 division_cost_eu = 9.75
 division_cv = 0.1
+starvation_h = 0
+turnover_per_h = 1e-4
 [returns]
 viability = { curve = "power", exponent = 1.7000000000000002, surface_effect = 2 }
 fecundity.exponent = 0.3
 fecundity.interior_effect = 0
+[support]
+range_diameters = 0
+leak = 0.25
+[nutrient]
+bath_mM = 0.25
+half_saturation_mM = 1e-3
+uptake_fmol_per_h = 3
+diffusivity_um2_per_s = 2100
+exchange = 0.3
+[waste]
+release_fmol_per_h = 4.5
+diffusivity_um2_per_s = 700
+toxic_mM = 2
+exchange = 0.9
 [traits]
-cues = ["exposure", "lineage"]
+cues = ["exposure", "lineage", "income"]
 baseline = -0.5
 start = { lineage = 1.5 }
 mutation_probability = 0
@@ -102,6 +122,17 @@ fn settings_survive_being_spelled_out() {
     let settings = read(ALL_KEYS).expect("it has no fault");
     assert_eq!(settings.traits.start[Cue::Lineage.index()], 1.5);
     assert_eq!(settings.run.tick, Tick::Hours(0.25));
+    assert_eq!(settings.habitat.layout, Layout::Torus { dispersal_sites: 0.75 });
+    assert_eq!(settings.body.plan, Plan::Tree);
+    assert_eq!((settings.budget.starvation_h, settings.budget.turnover_per_h), (0.0, 1e-4));
+    assert_eq!(settings.support, Some(Support { range_diameters: 0.0, leak: 0.25 }));
+    let nutrient = settings.nutrient.as_ref().expect("stated");
+    assert_eq!((nutrient.bath_mm, nutrient.half_saturation_mm), (0.25, 1e-3));
+    assert_eq!((nutrient.uptake_fmol_per_h, nutrient.diffusivity_um2_per_s), (3.0, 2100.0));
+    assert_eq!(nutrient.exchange, 0.3);
+    let waste = settings.waste.as_ref().expect("stated");
+    assert_eq!((waste.release_fmol_per_h, waste.diffusivity_um2_per_s), (4.5, 700.0));
+    assert_eq!((waste.toxic_mm, waste.exchange), (2.0, 0.9));
     assert_eq!(read(&settings.to_toml()).expect("spelled out"), settings);
     // The manifest stores the same as JSON; from there it becomes TOML again.
     let json = serde_json::to_string(&settings).expect("tables become JSON");
@@ -129,17 +160,78 @@ fn every_curve_is_read_and_spelled_out() {
     assert_eq!(steep.value(1.0), 1.0);
 }
 
+/// A scenario spells out every key of the tables it has, but for those whose condition fails.
 #[test]
 fn every_key_is_spelled_out() {
-    let spelled: Vec<_> = Settings::example("x").spelled_out();
-    for entry in somadawn::scenario::registry::entries() {
-        let applies = entry.condition().is_none_or(|condition| condition.words.contains(&"power"));
-        let stated = spelled.iter().any(|(path, _)| *path == entry.path());
-        assert_eq!(stated, applies, "{}", entry.path());
+    let all = ["support.leak=0", "nutrient.exchange=1", "waste.exchange=1"].map(Override::set);
+    let fields = Settings::from_toml_str("x", "title = 'x'", &all).expect("sound overrides");
+    for (settings, every_table) in [(Settings::example("x"), false), (fields, true)] {
+        let spelled = settings.spelled_out();
+        for entry in entries() {
+            let default = ["power", "mixed"];
+            let applies =
+                entry.condition().is_none_or(|c| default.iter().any(|word| c.words.contains(word)));
+            let optional = tables().iter().any(|t| t.path == entry.table() && t.absent.is_some());
+            let stated = spelled.iter().any(|(path, _)| *path == entry.path());
+            assert_eq!(stated, applies && (every_table || !optional), "{}", entry.path());
+        }
+        let paths: Vec<_> = spelled.iter().map(|(path, _)| *path).collect();
+        let registered = entries().iter().map(|entry| entry.path());
+        assert_eq!(paths, registered.filter(|path| paths.contains(path)).collect::<Vec<_>>());
     }
-    let paths: Vec<_> = spelled.iter().map(|(path, _)| *path).collect();
-    let registered = somadawn::scenario::registry::entries().iter().map(|entry| entry.path());
-    assert_eq!(paths, registered.filter(|path| paths.contains(path)).collect::<Vec<_>>());
+}
+
+/// An optional table is on when it is stated, empty or not, or any key of it is; and it leaves no
+/// trace where it is not.
+#[test]
+fn stating_an_optional_table_switches_it_on() {
+    let bare = read("title = 'x'").expect("a title is enough");
+    let spelled = bare.to_toml();
+    for table in tables().iter().filter(|table| table.absent.is_some()) {
+        assert!(!spelled.contains(table.path), "{}", table.path);
+        let stated = read(&format!("title = 'x'\n[{}]", table.path)).expect("an empty table");
+        let inline = read(&format!("title = 'x'\n{} = {{}}", table.path)).expect("the same");
+        let key = entries().iter().find(|entry| entry.table() == table.path).expect("it has keys");
+        let set = Override::set(format!("{}={}", key.path(), key.default_value()));
+        let overridden = Settings::from_toml_str("x", "title = 'x'", &[set]).expect("the default");
+        assert_ne!(stated, bare, "{}", table.path);
+        assert_eq!((&stated, &stated), (&inline, &overridden), "{}", table.path);
+        assert!(stated.to_toml().contains(&format!("[{}]", table.path)));
+        assert_eq!(read(&stated.to_toml()).expect("spelled out"), stated);
+    }
+    let text = "title = 'x'\n[support]\n[nutrient]\n[waste]\n[habitat]\nlayout = 'torus'";
+    let settings = read(text).expect("empty tables");
+    assert_eq!(settings.support, Some(Support { range_diameters: 2.0, leak: 0.0 }));
+    let nutrient = Nutrient {
+        bath_mm: 0.05,
+        half_saturation_mm: 0.02,
+        uptake_fmol_per_h: 20.0,
+        diffusivity_um2_per_s: 500.0,
+        exchange: 1.0,
+    };
+    assert_eq!(settings.nutrient, Some(nutrient));
+    let waste = Waste {
+        release_fmol_per_h: 20.0,
+        diffusivity_um2_per_s: 500.0,
+        toxic_mm: 0.05,
+        exchange: 1.0,
+    };
+    assert_eq!(settings.waste, Some(waste));
+    assert_eq!(settings.habitat.layout, Layout::Torus { dispersal_sites: 1.5 });
+}
+
+#[test]
+fn every_plan_is_read() {
+    for (word, plan) in [
+        ("clump", Plan::Clump),
+        ("chain", Plan::Chain),
+        ("tree", Plan::Tree),
+        ("shell", Plan::Shell),
+    ] {
+        let settings = read(&format!("title = 'x'\n[body]\nplan = '{word}'")).expect("a plan");
+        assert_eq!(settings.body.plan, plan);
+        assert_eq!(read(&settings.to_toml()).expect("spelled out"), settings);
+    }
 }
 
 #[test]
@@ -174,7 +266,7 @@ fn the_schema_closes_every_table_and_describes_every_key() {
     assert_eq!(schema["$schema"], "https://json-schema.org/draft/2020-12/schema");
     assert_eq!(schema["required"], serde_json::json!(["title"]));
     assert_eq!(schema["additionalProperties"], false);
-    for entry in somadawn::scenario::registry::entries() {
+    for entry in entries() {
         let mut place = &schema;
         for name in entry.path().split('.') {
             assert_eq!(place["additionalProperties"], false, "{}", entry.path());

@@ -1,7 +1,7 @@
-//! Templates and the six scenarios of `configs`: complete, commented, without faults.
+//! Templates and the nine scenarios of `configs`: complete, commented, without faults.
 
 use somadawn::scenario::Settings;
-use somadawn::scenario::registry::entries;
+use somadawn::scenario::registry::{entries, tables};
 use somadawn::scenario::template::{TEMPLATES, Template};
 
 fn read(name: &str, text: &str) -> Settings {
@@ -44,10 +44,20 @@ fn the_full_template_holds_the_defaults() {
 fn later_work_stands_in_no_template() {
     for template in TEMPLATES {
         let text = template.text().expect("templates have no faults");
-        for word in ["support", "nutrient", "waste", "[scan", "torus", "income\"", "dispersal"] {
-            assert!(!text.contains(&format!("[{word}")), "{word}");
-            assert!(!text.contains(&format!("\"{word}")), "{word}");
-        }
+        assert!(!text.contains("[scan") && !text.contains("\"neighbours\""), "{}", template.name);
+    }
+}
+
+/// Tables that a template does not have stand there as comments, with what their absence means.
+#[test]
+fn optional_tables_stand_as_comments() {
+    let full = Template::named("full").and_then(|full| full.text().ok()).expect("it is there");
+    let words: Vec<_> = full.split_whitespace().filter(|word| *word != "#").collect();
+    let words = words.join(" ");
+    for table in tables() {
+        let Some(absent) = table.absent else { continue };
+        assert!(full.contains(&format!("\n# [{}]\n", table.path)), "{}", table.path);
+        assert!(words.contains(&format!("without this table, {absent}.")), "{absent}");
     }
 }
 

@@ -12,19 +12,20 @@
 use super::simulation_support::{
     assert_agrees, lottery, mean_and_error, own_refills, population, size, trials,
 };
+use somadawn::scenario::Settings;
 use somadawn::world::Population;
 
 const SD: f64 = 0.02;
 
 /// Mean of S^2 / Vm over `samples` censuses, N generations apart, of one population at equilibrium,
-/// which takes of the order of N generations to reach: 6 N are passed first.
-fn mean_variance(sites: usize, probability: f64, samples: u32, seed: u64) -> f64 {
-    let mut settings = lottery(sites);
+/// which takes of the order of N generations to reach: 6 N are passed first. `habitat` is a lottery.
+pub(crate) fn mean_variance(habitat: &Settings, probability: f64, samples: u32, seed: u64) -> f64 {
+    let mut settings = habitat.clone();
     settings.traits.mutation_probability = probability;
     settings.traits.mutation_sd = SD;
     settings.traits.bound = 50.0;
     let mut population = population(&settings, seed, |_| 0.0);
-    let between = sites as f64;
+    let between = settings.habitat.sites as f64;
     let sum: f64 = (0..samples)
         .map(|sample| {
             run_to(&mut population, (f64::from(sample) + 6.0) * between);
@@ -34,7 +35,7 @@ fn mean_variance(sites: usize, probability: f64, samples: u32, seed: u64) -> f64
     sum / f64::from(samples) / (probability * SD * SD)
 }
 
-fn run_to(population: &mut Population, generation: f64) {
+pub(crate) fn run_to(population: &mut Population, generation: f64) {
     while population.clock().generation < generation {
         population.tick();
     }
@@ -53,7 +54,8 @@ fn variance(population: &mut Population) -> f64 {
 fn a_neutral_trait_varies_as_moran_with_distinct_parents_says() {
     for (sites, probability, populations) in [(10, 1.0, 80), (10, 0.2, 80), (20, 1.0, 60)] {
         let count = size(populations, 10 * populations);
-        let means = trials(201, count, |seed| mean_variance(sites, probability, 50, seed));
+        let means =
+            trials(201, count, |seed| mean_variance(&lottery(sites), probability, 50, seed));
         let n = sites as f64;
         let expected = (n - 1.0) / 2.0 / (1.0 - own_refills(n));
         let what = format!("S^2 / Vm, N = {sites}, mu = {probability}");

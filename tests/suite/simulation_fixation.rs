@@ -19,7 +19,11 @@ use somadawn::world::Population;
 const SITES: u32 = 10;
 
 /// Runs until one founder line is left: which one, and the generation.
-fn last_line(settings: &Settings, seed: u64, baseline: impl Fn(u32) -> f64) -> (u32, f64) {
+pub(crate) fn last_line(
+    settings: &Settings,
+    seed: u64,
+    baseline: impl Fn(u32) -> f64,
+) -> (u32, f64) {
     let mut population = population(settings, seed, baseline);
     loop {
         until_settlement(&mut population);

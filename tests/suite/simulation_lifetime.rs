@@ -98,7 +98,7 @@ fn growth_h(settings: &Settings) -> f64 {
 /// Colonies are counted by their death, from when the start is forgotten: neither end then favours
 /// long or short lives.
 fn measured(settings: &Settings, programme: &Programme, tick_h: f64, seed: u64) -> [f64; 2] {
-    let founder = |site| Genotype { programme: *programme, founder: site };
+    let founder = |site| Genotype::of_founder(*programme, site);
     let mut population = Population::founded(settings, tick_h, generator(seed), founder);
     run_to_deaths(&mut population, 5 * SITES as u64);
     let (first, from) = (population.ledger().clone(), population.clock().clone());

@@ -5,6 +5,7 @@ use std::sync::atomic::AtomicBool;
 use somadawn::evolution::Replicate;
 use somadawn::record::{ReplicateRecord, Stage};
 use somadawn::scenario::Settings;
+use somadawn::scenario::settings::{Layout, Nutrient, Support, Waste};
 use somadawn::study::run::{Replicates, Unwatched};
 use somadawn::study::start;
 use somadawn::theory::{Cue, CueSet};
@@ -29,7 +30,34 @@ fn scenario() -> Settings {
     settings
 }
 
-fn records(settings: &Settings, threads: usize) -> Vec<ReplicateRecord> {
+/// The same with all that space adds: fields, hunger, local support, replaced cells, a torus, and a tax
+/// by which colonies differ in how they grow.
+fn scenario_in_space() -> Settings {
+    let mut settings = scenario();
+    settings.habitat.sites = 36;
+    settings.habitat.layout = Layout::Torus { dispersal_sites: 1.2 };
+    settings.budget.upkeep_eu_per_h = 0.3;
+    settings.budget.turnover_per_h = 0.002;
+    settings.support = Some(Support { range_diameters: 1.5, leak: 0.1 });
+    settings.nutrient = Some(Nutrient {
+        bath_mm: 0.05,
+        half_saturation_mm: 0.02,
+        uptake_fmol_per_h: 900.0,
+        diffusivity_um2_per_s: 500.0,
+        exchange: 0.8,
+    });
+    settings.waste = Some(Waste {
+        release_fmol_per_h: 100.0,
+        diffusivity_um2_per_s: 500.0,
+        toxic_mm: 0.05,
+        exchange: 0.8,
+    });
+    settings.traits.cues = settings.traits.cues.with(Cue::Income);
+    settings.run.generations = 15;
+    settings
+}
+
+pub(crate) fn records(settings: &Settings, threads: usize) -> Vec<ReplicateRecord> {
     let numbers: Vec<u32> = (0..settings.run.replicates).collect();
     let stop = AtomicBool::new(false);
     let mut records = Vec::new();
@@ -46,14 +74,15 @@ fn records(settings: &Settings, threads: usize) -> Vec<ReplicateRecord> {
 /// Rows, censuses and sampled bodies, compared in full.
 #[test]
 fn records_do_not_depend_on_the_number_of_threads() {
-    let settings = scenario();
-    let alone = records(&settings, 1);
-    assert_eq!(alone.len(), 9);
-    assert!(alone.iter().all(|record| record.census.len() >= 6 && !record.bodies.is_empty()));
-    for threads in [2, 7] {
-        assert!(records(&settings, threads) == alone, "{threads} threads change the outcome");
+    for settings in [scenario(), scenario_in_space()] {
+        let alone = records(&settings, 1);
+        assert_eq!(alone.len(), 9);
+        assert!(alone.iter().all(|record| record.census.len() >= 3 && !record.bodies.is_empty()));
+        for threads in [2, 7] {
+            assert!(records(&settings, threads) == alone, "{threads} threads change the outcome");
+        }
+        assert!(alone[0].census != alone[1].census, "replicates are all the same");
     }
-    assert!(alone[0].census != alone[1].census, "replicates are all the same");
 }
 
 /// Whoever asks a replicate to stop may let it go on: it then leaves what it leaves undisturbed. Of 1,000
@@ -84,6 +113,13 @@ fn a_replicate_told_to_stop_again_and_again_passes_no_census_over() {
 #[test]
 fn values_of_fixed_seeds_are_pinned() {
     let settings = scenario();
+    let found: Vec<String> = records(&settings, 2).iter().take(2).map(digest).collect();
+    insta::assert_snapshot!(found.join("\n"));
+}
+
+#[test]
+fn values_of_fixed_seeds_in_space_are_pinned() {
+    let settings = scenario_in_space();
     let found: Vec<String> = records(&settings, 2).iter().take(2).map(digest).collect();
     insta::assert_snapshot!(found.join("\n"));
 }

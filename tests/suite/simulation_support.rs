@@ -86,9 +86,8 @@ pub(crate) fn population(
     seed: u64,
     baseline: impl Fn(u32) -> f64,
 ) -> Population {
-    Population::founded(settings, TICK_H, generator(seed), |site| Genotype {
-        programme: Programme::generalist(baseline(site)),
-        founder: site,
+    Population::founded(settings, TICK_H, generator(seed), |site| {
+        Genotype::of_founder(Programme::generalist(baseline(site)), site)
     })
 }
 

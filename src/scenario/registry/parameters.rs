@@ -1,31 +1,30 @@
-//! Every parameter and every table of the scenario file. To add one: a `static` here, a line in
+//! Every parameter of the scenario file. To add one: a `static` here or below, a line in
 //! [`ENTRIES`], a line in `read.rs` and one in `resolved.rs`.
 
-use crate::theory::Cue;
-
-use super::super::settings::{Layout, Plan};
+use super::super::settings::Plan;
 use super::domain::{Flag, Text};
 use super::numbers::{Real, RealOr, Whole, WordOr};
-use super::per_cue::PerCue;
-use super::words::{CueList, Words};
-use super::{Described, Later, Parameter, Table};
-
-mod returns;
-
-pub(crate) use returns::{FECUNDITY, TaskParameters, VIABILITY};
+use super::words::Words;
+use super::{Condition, Described, Parameter};
 
 /// Most cells of all colonies together: about 200 bytes each in memory.
 pub(crate) const MOST_CELLS: u64 = 100_000_000;
 
-/// Largest bound of a trait: beyond it the logistic function is 0 or 1 to double precision.
-const WIDEST_BOUND: f64 = 50.0;
+/// Least diameter of a cell, um: far below any cell, and far above where conductances underflow.
+const LEAST_DIAMETER_UM: f64 = 1e-3;
 
-const BUILT_CUES: &[Cue] = &[Cue::Noise, Cue::Lineage, Cue::Exposure];
-const LATER_CUES: &[&str] = &["income", "neighbours"];
+/// The words of `habitat.layout`.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(crate) enum LayoutKind {
+    /// Every site is as near as any other.
+    Mixed,
+    /// Sites lie on a square torus.
+    Torus,
+}
 
 /// Parameters of one `Domain`, written with only what differs.
 macro_rules! parameter {
-    ($path:literal, $unit:literal, $meaning:literal, $domain:expr, $default:expr) => {
+    ($path:literal, $unit:literal, $meaning:expr, $domain:expr, $default:expr) => {
         Parameter {
             path: $path,
             unit: $unit,
@@ -37,6 +36,21 @@ macro_rules! parameter {
         }
     };
 }
+
+mod fields;
+mod returns;
+mod run;
+mod traits;
+
+pub(crate) use fields::{NUTRIENT, SUPPORT, WASTE};
+pub(crate) use returns::{FECUNDITY, TaskParameters, VIABILITY};
+pub(crate) use run::{
+    CENSUS_EVERY, GENERATIONS, GERM_BELOW, ONSET_INDEX, REPLICATES, SOMA_ABOVE, STOP_AFTER_ONSET,
+    SUSTAINED_CENSUSES, TICK,
+};
+pub(crate) use traits::{
+    BASELINE, BOUND, COST_PER_UNIT, CUES, MUTATION_PROBABILITY, MUTATION_SD, START,
+};
 
 pub(crate) static TITLE: Parameter<Text> = Parameter {
     required: true,
@@ -63,19 +77,41 @@ pub(crate) static SITES: Parameter<Whole> = parameter!(
     Whole { least: 4, most: 1_000_000 },
     256
 );
-pub(crate) static LAYOUT: Parameter<Words<Layout>> = parameter!(
+pub(crate) static LAYOUT: Parameter<Words<LayoutKind>> = parameter!(
     "habitat.layout",
     "none",
-    "How propagules spread; mixed: each lands on any site with equal probability",
-    Words { words: &[("mixed", Layout::Mixed)], later: &["torus"] },
-    Layout::Mixed
+    "How propagules spread; mixed: each lands on any site with equal probability; torus: around \
+     its parent on a square whose opposite edges join, so that kin compete (sites must then be a \
+     square number)",
+    Words { words: &[("mixed", LayoutKind::Mixed), ("torus", LayoutKind::Torus)], later: &[] },
+    LayoutKind::Mixed
 );
+pub(crate) static DISPERSAL: Parameter<Real> = Parameter {
+    condition: Some(Condition { sibling: "layout", words: &["torus"] }),
+    ..parameter!(
+        "habitat.dispersal_sites",
+        "site widths",
+        "Standard deviation of landing along each of the square's two axes",
+        Real::above_to(0.0, 1e6),
+        1.5
+    )
+};
 
 pub(crate) static PLAN: Parameter<Words<Plan>> = parameter!(
     "body.plan",
     "none",
-    "How a daughter cell is placed; clump: the body stays compact",
-    Words { words: &[("clump", Plan::Clump)], later: &["chain", "tree", "shell"] },
+    "How a daughter cell is placed; clump: pushed in, so that the body stays compact; chain: next \
+     to its mother in a line; tree: only on an empty site beside its mother; shell: as in a clump, \
+     and the adult is a hollow ball of one layer",
+    Words {
+        words: &[
+            ("clump", Plan::Clump),
+            ("chain", Plan::Chain),
+            ("tree", Plan::Tree),
+            ("shell", Plan::Shell),
+        ],
+        later: &[],
+    },
     Plan::Clump
 );
 pub(crate) static ADULT_CELLS: Parameter<Whole> = parameter!(
@@ -89,7 +125,7 @@ pub(crate) static CELL_DIAMETER: Parameter<Real> = parameter!(
     "body.cell_diameter_um",
     "um",
     "Distance between the centres of touching cells (d)",
-    Real::above_to(0.0, 1e4),
+    Real::from_to(LEAST_DIAMETER_UM, 1e4),
     10.0
 );
 
@@ -158,131 +194,21 @@ pub(crate) static DIVISION_CV: Parameter<Real> = parameter!(
     0.0
 );
 
-pub(crate) static CUES: Parameter<CueList> = parameter!(
-    "traits.cues",
-    "none",
-    "Cues whose responsiveness can evolve; all that are named compete in one population",
-    CueList { built: BUILT_CUES, later: LATER_CUES },
-    &[Cue::Noise]
-);
-pub(crate) static BASELINE: Parameter<RealOr> = parameter!(
-    "traits.baseline",
-    "logit",
-    "Where the baseline g0 (logit of a cell's soma share) starts, within +-bound",
-    RealOr {
-        word: "optimum",
-        means: "the generalist's best",
-        number: Real::from_to(-WIDEST_BOUND, WIDEST_BOUND),
-    },
-    WordOr::Word
-);
-pub(crate) static START: Parameter<PerCue> = parameter!(
-    "traits.start",
-    "logit",
-    "Where each cue's responsiveness starts, within +-bound; 0 where unnamed",
-    PerCue {
-        built: BUILT_CUES,
-        later: LATER_CUES,
-        number: Real::from_to(-WIDEST_BOUND, WIDEST_BOUND),
-    },
-    [0.0; Cue::COUNT]
-);
-pub(crate) static MUTATION_PROBABILITY: Parameter<Real> = parameter!(
-    "traits.mutation_probability",
-    "none",
-    "Probability that a trait mutates, per trait and propagule",
-    Real::from_to(0.0, 1.0),
-    0.1
-);
-pub(crate) static MUTATION_SD: Parameter<Real> = parameter!(
-    "traits.mutation_sd",
-    "logit",
-    "Standard deviation of a mutation's step",
-    Real::from_to(0.0, WIDEST_BOUND),
-    0.2
-);
-pub(crate) static BOUND: Parameter<Real> = parameter!(
-    "traits.bound",
-    "logit",
-    "Bound of the baseline and of every responsiveness; mutations are reflected at +-bound",
-    Real::above_to(0.0, WIDEST_BOUND),
-    12.0
-);
-pub(crate) static COST_PER_UNIT: Parameter<Real> = parameter!(
-    "traits.cost_per_unit",
-    "none",
-    "Share of a cell's income lost per unit of summed responsiveness",
-    Real::from_to(0.0, 1.0),
-    0.0
-);
-
-pub(crate) static GENERATIONS: Parameter<Whole> = parameter!(
-    "run.generations",
-    "generations",
-    "Length of a replicate",
-    Whole { least: 1, most: 10_000_000 },
-    1500
-);
-pub(crate) static CENSUS_EVERY: Parameter<Whole> = parameter!(
-    "run.census_every",
-    "generations",
-    "Time between censuses; at most the length of a replicate",
-    Whole { least: 1, most: 10_000_000 },
-    10
-);
-pub(crate) static REPLICATES: Parameter<Whole> = parameter!(
-    "run.replicates",
-    "replicates",
-    "Independent populations, each with random numbers of its own",
-    Whole { least: 1, most: 1_000_000 },
-    8
-);
-pub(crate) static STOP_AFTER_ONSET: Parameter<Flag> = parameter!(
-    "run.stop_after_onset",
-    "none",
-    "Whether a replicate ends once its onset is confirmed",
-    Flag,
-    false
-);
-pub(crate) static TICK: Parameter<RealOr> = parameter!(
-    "run.tick_h",
+pub(crate) static STARVATION: Parameter<Real> = parameter!(
+    "budget.starvation_h",
     "h",
-    "Hours over which settlement is batched",
-    RealOr {
-        word: "auto",
-        means: "a 100th of the generalist's generation time",
-        number: Real::from_to(1e-6, 1e6),
-    },
-    WordOr::Word
+    "How long a growing cell lives on an income below its upkeep; 1e6 and more: for ever",
+    Real::from_to(0.0, 1e9),
+    24.0
 );
-
-pub(crate) static ONSET_INDEX: Parameter<Real> = parameter!(
-    "onset.index",
-    "none",
-    "Division index D at and above which a population counts as differentiated",
-    Real::above_to(0.0, 1.0),
-    0.5
-);
-pub(crate) static SUSTAINED_CENSUSES: Parameter<Whole> = parameter!(
-    "onset.sustained_censuses",
-    "censuses",
-    "Censuses in a row for which D must stay so",
-    Whole { least: 1, most: 1_000_000 },
-    5
-);
-pub(crate) static GERM_BELOW: Parameter<Real> = parameter!(
-    "onset.germ_below",
-    "none",
-    "Soma share below which a cell counts as germ; below `soma_above`",
-    Real::between(0.0, 1.0),
-    0.1
-);
-pub(crate) static SOMA_ABOVE: Parameter<Real> = parameter!(
-    "onset.soma_above",
-    "none",
-    "Soma share above which a cell counts as soma",
-    Real::between(0.0, 1.0),
-    0.9
+pub(crate) static TURNOVER: Parameter<Real> = parameter!(
+    "budget.turnover_per_h",
+    "1/h",
+    "Rate at which a cell of an adult dies and is replaced by a neighbour's division, whose cost \
+     the colony's germ budget pays; a cell that touches no other lives on and costs nothing; at 10 \
+     a cell lives for six minutes, and a run takes time for every replacement",
+    Real::from_to(0.0, 10.0),
+    0.0
 );
 
 /// All parameters, in the order of the scenario file.
@@ -291,6 +217,7 @@ pub(crate) static ENTRIES: &[&dyn Described] = &[
     &SEED,
     &SITES,
     &LAYOUT,
+    &DISPERSAL,
     &PLAN,
     &ADULT_CELLS,
     &CELL_DIAMETER,
@@ -303,6 +230,8 @@ pub(crate) static ENTRIES: &[&dyn Described] = &[
     &UPKEEP,
     &DIVISION_COST,
     &DIVISION_CV,
+    &STARVATION,
+    &TURNOVER,
     &VIABILITY.curve,
     &VIABILITY.exponent,
     &VIABILITY.half,
@@ -317,6 +246,17 @@ pub(crate) static ENTRIES: &[&dyn Described] = &[
     &FECUNDITY.points,
     &FECUNDITY.surface_effect,
     &FECUNDITY.interior_effect,
+    &SUPPORT.range,
+    &SUPPORT.leak,
+    &NUTRIENT.bath,
+    &NUTRIENT.half_saturation,
+    &NUTRIENT.uptake,
+    &NUTRIENT.diffusivity,
+    &NUTRIENT.exchange,
+    &WASTE.release,
+    &WASTE.diffusivity,
+    &WASTE.toxic,
+    &WASTE.exchange,
     &CUES,
     &BASELINE,
     &START,
@@ -333,38 +273,4 @@ pub(crate) static ENTRIES: &[&dyn Described] = &[
     &SUSTAINED_CENSUSES,
     &GERM_BELOW,
     &SOMA_ABOVE,
-];
-
-/// All tables, in the order of the scenario file.
-pub(crate) static TABLES: &[Table] = &[
-    Table { path: "habitat", meaning: "Where colonies live" },
-    Table { path: "body", meaning: "The shape and size of an adult colony" },
-    Table { path: "life", meaning: "Founding, reproduction and death of a colony" },
-    Table {
-        path: "budget",
-        meaning: "A cell's energy; 1 eu is what it earns in an hour by default",
-    },
-    Table {
-        path: "returns.viability",
-        meaning: "What the soma budget yields: viability, which lowers the hazard",
-    },
-    Table {
-        path: "returns.fecundity",
-        meaning: "What the germ budget yields: fecundity, which makes propagules",
-    },
-    Table { path: "traits", meaning: "What is heritable, where it starts and how it mutates" },
-    Table { path: "run", meaning: "How long a replicate is, and how many there are" },
-    Table { path: "onset", meaning: "When differentiation counts as arisen" },
-];
-
-/// Tables and keys of later versions.
-pub(crate) static LATER: &[Later] = &[
-    Later { path: "support", instead: "without this table, support is pooled over the colony" },
-    Later { path: "nutrient", instead: "without this table, every cell is fully fed" },
-    Later { path: "waste", instead: "without this table, there is no waste" },
-    Later { path: "scan", instead: "change single keys with --set in the meantime" },
-    Later {
-        path: "habitat.dispersal_sites",
-        instead: "in the mixed habitat a propagule lands on any site with equal probability",
-    },
 ];

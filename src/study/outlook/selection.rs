@@ -13,6 +13,11 @@ pub struct Selection {
     pub soma_share: f64,
     /// Propagules that a founder of the best generalist leaves (R0).
     pub r0: f64,
+    /// From founding to adulthood, h; infinite where nothing grows up.
+    pub growth_h: f64,
+    /// Mean age of a parent at the birth of a propagule, h; infinite where the generalist cannot
+    /// grow up or never dies.
+    pub generation_h: f64,
     /// The pull on each enabled cue.
     pub pulls: Vec<Pull>,
 }
@@ -63,7 +68,13 @@ impl Selection {
         let model = model(settings);
         let generalist = model.generalist();
         let pulls = model.selection_at(&generalist).iter().map(pull).collect();
-        Self { soma_share: generalist.soma_share, r0: generalist.r0, pulls }
+        Self {
+            soma_share: generalist.soma_share,
+            r0: generalist.r0,
+            growth_h: model.growth_h().unwrap_or(f64::INFINITY),
+            generation_h: model.generation_h(&generalist),
+            pulls,
+        }
     }
 }
 

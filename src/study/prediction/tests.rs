@@ -6,9 +6,7 @@ use std::time::Instant;
 use approx::assert_relative_eq;
 
 use super::*;
-use crate::scenario::settings::{
-    Baseline, Body, Budget, Habitat, Layout, Life, Onset, Plan, Returns, Run, Tick, Traits,
-};
+use crate::scenario::settings::Returns;
 use crate::theory::{Cue, CueSet, ReturnCurve, TaskReturn, closed_forms};
 
 fn settings(a: f64, c: f64, cues: &[Cue]) -> Settings {
@@ -17,43 +15,10 @@ fn settings(a: f64, c: f64, cues: &[Cue]) -> Settings {
         surface_effect: 1.0,
         interior_effect: 1.0,
     };
-    Settings {
-        title: "Lantern algae of the Ostrel ponds".into(),
-        seed: 1,
-        habitat: Habitat { sites: 256, layout: Layout::Mixed },
-        body: Body { plan: Plan::Clump, adult_cells: 64, cell_diameter_um: 10.0 },
-        life: Life {
-            propagule_cells: 1,
-            propagule_cost_eu: 8.0,
-            adult_hazard_per_h: 0.005,
-            extrinsic_hazard_per_h: 0.0,
-            juvenile_hazard_per_h: 0.0,
-        },
-        budget: Budget {
-            income_eu_per_h: 1.0,
-            upkeep_eu_per_h: 0.0,
-            division_cost_eu: 8.0,
-            division_cv: 0.0,
-        },
-        returns: Returns { viability: task(a), fecundity: task(c) },
-        traits: Traits {
-            cues: cues.iter().copied().collect::<CueSet>(),
-            baseline: Baseline::Optimum,
-            start: [0.0; Cue::COUNT],
-            mutation_probability: 0.1,
-            mutation_sd: 0.2,
-            bound: 12.0,
-            cost_per_unit: 0.0,
-        },
-        run: Run {
-            generations: 1500,
-            census_every: 10,
-            replicates: 8,
-            stop_after_onset: false,
-            tick: Tick::Auto,
-        },
-        onset: Onset { index: 0.5, sustained_censuses: 5, germ_below: 0.1, soma_above: 0.9 },
-    }
+    let mut settings = Settings::example("Lantern algae of the Ostrel ponds");
+    settings.returns = Returns { viability: task(a), fecundity: task(c) };
+    settings.traits.cues = cues.iter().copied().collect::<CueSet>();
+    settings
 }
 
 /// By hand: linear returns, 64 cells of z = 1/2: B = 32, V = 1/2, R0 = 32 / (8 * 0.005 / 0.5).

@@ -1,19 +1,23 @@
 //! Settled propagules grow by division on their body's lattice.
 //!
 //! Nothing outside a colony acts on its growth, so its divisions are played at once when it is
-//! founded; it then sleeps until the date of its adulthood or of its death as a juvenile.
+//! founded, or a development that was played before is taken; it then sleeps until the date of its
+//! adulthood or of its death as a juvenile.
+
+use std::sync::Arc;
 
 use bevy_ecs::prelude::*;
+use rand::Rng;
 
 use super::only_table;
-use crate::tissue::Arrangement;
+use super::plots::{CellColumns, Plot};
+use crate::tissue::{Ending, Growth};
 use crate::world::components::{
     CellCount, DivisionLabel, Exposed, GenotypeId, Lifespan, Phase, Place, Reserve,
 };
 use crate::world::draws::exponential;
-use crate::world::resources::{
-    Calendar, Clock, Event, GenePool, Ledger, Nursery, Random, Rules, Settlers,
-};
+use crate::world::nursery::{Developments, Nursery, SharedBodies, SharedBody};
+use crate::world::resources::{Calendar, Clock, Event, GenePool, Ledger, Random, Rules, Settlers};
 
 type CellQuery<'w, 's> = Query<
     'w,
@@ -36,6 +40,7 @@ pub fn grow_cells(
     pool: Res<GenePool>,
     mut random: ResMut<Random>,
     mut nursery: ResMut<Nursery>,
+    mut bodies: ResMut<SharedBodies>,
     mut calendar: ResMut<Calendar>,
     mut ledger: ResMut<Ledger>,
     mut cells: CellQuery,
@@ -59,15 +64,22 @@ pub fn grow_cells(
     let capacity = rules.0.body.adult_cells;
     for settler in &settlers.0 {
         let site = settler.site as usize;
-        let pace = rules.pace(&pool.0[site].programme);
-        let doom_h = juvenile_doom_h(&rules, &mut random);
-        let body = nursery.0.grow(&pace, doom_h, &mut random.0);
-        let (held, grown_h) = (body.places.len() as u32, body.duration_h);
-        columns.house(site * capacity, settler.site, &body);
-        let life = dates(clock.now_h, grown_h, doom_h);
-        if life.adult_h < life.dies_h {
-            columns.mark_surface(site * capacity, nursery.0.exposed());
-        }
+        let mut plot = Plot { columns: &mut columns, first: site * capacity, site: settler.site };
+        let nursling = Nursling {
+            rules: &rules,
+            genotype: site,
+            pool: &pool,
+            doom_h: juvenile_doom_h(&rules, &mut random),
+        };
+        let grown = match &mut *nursery {
+            Nursery::Own(growth) => nursling.grow_alone(growth, &mut plot, &mut random.0),
+            Nursery::Shared(developments) => {
+                let (grown, body) = nursling.take_body(developments, &mut plot, &mut random.0);
+                bodies.0[site] = Some(body);
+                grown
+            }
+        };
+        let life = dates(clock.now_h, &grown, nursling.doom_h);
         if life.adult_h < life.dies_h {
             calendar.expect_adulthood(Event { at_h: life.adult_h, site: settler.site });
         } else {
@@ -75,8 +87,9 @@ pub fn grow_cells(
         }
         phases[site] = Phase::Growing;
         lives[site] = life;
-        counts[site] = CellCount(held);
-        ledger.cell_lives += u64::from(held);
+        counts[site] = CellCount(grown.cells);
+        ledger.cell_lives += grown.births;
+        ledger.never_matured += u64::from(grown.is_stunted(nursling.doom_h));
     }
 }
 
@@ -86,48 +99,92 @@ fn juvenile_doom_h(rules: &Rules, random: &mut Random) -> f64 {
     if hazard_per_h > 0.0 { exponential(&mut random.0) / hazard_per_h } else { f64::INFINITY }
 }
 
+/// What comes of a propagule's growth, at its adulthood or its doom.
+#[derive(Debug, Clone, Copy)]
+struct Grown {
+    /// Hours to adulthood; infinite if that is never reached.
+    adult_h: f64,
+    /// Hours until growth has stopped short of adult size; infinite if it never does.
+    stopped_h: f64,
+    /// Cells that live then.
+    cells: u32,
+    /// Cells that were born until then, founders among them.
+    births: u64,
+}
+
+impl Grown {
+    /// Whether the colony lives to see its growth stop short of adult size.
+    fn is_stunted(&self, doom_h: f64) -> bool {
+        self.stopped_h.is_finite() && self.stopped_h < doom_h
+    }
+}
+
 /// Dates of a colony that settles now; the death of one that matures is drawn at adulthood.
 ///
-/// A colony that can neither grow up nor die as a juvenile starves at once.
-fn dates(now_h: f64, grown_h: f64, doom_h: f64) -> Lifespan {
-    let matures = grown_h.is_finite() && grown_h < doom_h;
-    let adult_h = if matures { now_h + grown_h } else { f64::INFINITY };
-    let dies_h = match (matures, doom_h.is_finite()) {
-        (true, _) => f64::INFINITY,
-        (false, true) => now_h + doom_h,
-        (false, false) => now_h,
-    };
+/// A colony whose growth has stopped short of adult size leaves nobody: it gives up its site then, if it
+/// has not died as a juvenile before.
+fn dates(now_h: f64, grown: &Grown, doom_h: f64) -> Lifespan {
+    let matures = grown.adult_h.is_finite() && grown.adult_h < doom_h;
+    let adult_h = if matures { now_h + grown.adult_h } else { f64::INFINITY };
+    let dies_h = if matures { f64::INFINITY } else { now_h + doom_h.min(grown.stopped_h) };
     Lifespan { founded_h: now_h, adult_h, dies_h }
 }
 
-/// The columns of cells that growth writes.
-struct CellColumns<'w> {
-    places: &'w mut [Place],
-    labels: &'w mut [DivisionLabel],
-    reserves: &'w mut [Reserve],
-    genotypes: &'w mut [GenotypeId],
-    exposed: &'w mut [Exposed],
+/// A propagule that has settled.
+struct Nursling<'a> {
+    rules: &'a Rules,
+    genotype: usize,
+    pool: &'a GenePool,
+    doom_h: f64,
 }
 
-impl CellColumns<'_> {
-    /// Writes a grown body into the rows from `first` on.
-    fn house(&mut self, first: usize, genotype: u32, body: &Arrangement<'_>) {
-        let rows = first..first + body.places.len();
-        for (row, place) in self.places[rows.clone()].iter_mut().zip(body.places) {
-            *row = Place(*place);
+impl Nursling<'_> {
+    /// Grows a body of its own on its plot.
+    fn grow_alone(
+        &self,
+        growth: &mut Growth,
+        plot: &mut Plot<'_, '_>,
+        rng: &mut impl Rng,
+    ) -> Grown {
+        let pace = self.rules.pace(&self.pool.0[self.genotype].programme);
+        let body = growth.grow(&pace, self.doom_h, rng);
+        let (cells, adult_h) = (body.places.len() as u32, body.duration_h);
+        plot.house(&body);
+        if adult_h < self.doom_h {
+            plot.mark_surface(growth.exposed());
         }
-        for (row, label) in self.labels[rows.clone()].iter_mut().zip(body.labels) {
-            *row = DivisionLabel(*label);
-        }
-        for (row, reserve) in self.reserves[rows.clone()].iter_mut().zip(body.reserves_eu) {
-            *row = Reserve(*reserve);
-        }
-        self.genotypes[rows].fill(GenotypeId(genotype));
+        let stopped_h = match (adult_h.is_finite(), pace.net_income_eu_per_h < 0.0) {
+            (true, _) => f64::INFINITY,
+            // Its cells live on as long as hungry cells do, or live on without ever dividing.
+            (false, true) => self.rules.0.budget.starvation_h,
+            (false, false) => 0.0,
+        };
+        Grown { adult_h, stopped_h, cells, births: u64::from(cells) }
     }
 
-    fn mark_surface(&mut self, first: usize, surface: impl Iterator<Item = bool>) {
-        for (row, exposed) in self.exposed[first..].iter_mut().zip(surface) {
-            *row = Exposed(exposed);
+    /// Takes a body from the shared developments to its plot.
+    fn take_body(
+        &self,
+        developments: &mut Developments,
+        plot: &mut Plot<'_, '_>,
+        rng: &mut impl Rng,
+    ) -> (Grown, Arc<SharedBody>) {
+        let kept = self.rules.kept_share(&self.pool.0[self.genotype].programme);
+        let (body, slowness) = developments.draw(kept, rng);
+        let development = &body.development;
+        let (adult_h, stopped_h) = match development.ending {
+            Ending::Adult(hours) => (hours * slowness, f64::INFINITY),
+            Ending::Stunted(hours) => (f64::INFINITY, hours * slowness),
+        };
+        let births = if adult_h.min(stopped_h) < self.doom_h {
+            development.births_h.len()
+        } else {
+            development.born_by(self.doom_h / slowness)
+        };
+        if adult_h < self.doom_h {
+            plot.furnish(development);
         }
+        let cells = development.coordinates.len() as u32;
+        (Grown { adult_h, stopped_h, cells, births: births as u64 }, body)
     }
 }

@@ -9,10 +9,14 @@ pub mod budgets;
 pub mod clock;
 pub mod cues;
 pub mod growth;
+pub mod landing;
 pub mod maturity;
+mod plots;
 pub mod reproduction;
 pub mod settlement;
 pub mod support;
+pub mod turnover;
+pub(super) mod yields;
 
 use bevy_ecs::query::QueryNotDenseError;
 

@@ -4,7 +4,7 @@ use bevy_ecs::prelude::*;
 
 use super::only_table;
 use crate::world::components::{HeadStart, PropaguleStock, StockRate, StockSince, StockUntil};
-use crate::world::resources::{Clock, Released, Vacancies};
+use crate::world::resources::{Clock, EarlierReleases, Released, Vacancies};
 
 /// Counts the propagules that each colony released in this tick, up to its death.
 ///
@@ -13,6 +13,7 @@ use crate::world::resources::{Clock, Released, Vacancies};
 pub fn release_propagules(
     clock: Res<Clock>,
     vacancies: Res<Vacancies>,
+    earlier: Res<EarlierReleases>,
     mut released: ResMut<Released>,
     mut colonies: Query<(&StockSince, &StockUntil, &HeadStart, &StockRate)>,
 ) {
@@ -29,5 +30,10 @@ pub fn release_propagules(
         let here = stock.released_between(clock.from_h, clock.now_h);
         *count = here as u32;
         *total += here;
+    }
+    for (site, count) in &earlier.of_tick {
+        let here = &mut by_site[*site as usize];
+        *here = here.saturating_add(*count as u32);
+        *total += count;
     }
 }

@@ -1,26 +1,28 @@
-//! Propagules land on sites drawn at random; the first to land on an empty one settles it.
+//! Propagules land, and the first to land on an empty site settles it.
 
 use bevy_ecs::prelude::*;
-use rand::seq::index;
 use rand::{Rng, RngExt};
 
+use super::landing::Landing;
 use super::only_table;
+use crate::scenario::settings::Layout;
 use crate::world::components::{GenotypeId, Lifespan, Output, Vitals};
-use crate::world::draws::{geometric, mutated, weighted_index};
+use crate::world::draws::{mutated, weighted_index};
 use crate::world::resources::{
     Clock, GenePool, Genotype, Ledger, Random, Released, Rules, Settler, Settlers, Vacancies,
 };
 
-/// Draws which propagules of this tick land on empty sites, and what they inherit.
+/// Draws which propagules of this tick settle, and what they inherit.
 ///
-/// Every propagule lands on a random site, and settles it if it is empty; who comes second to a site
-/// is lost. They come in random order, so those that settle are a random sample without replacement.
+/// On a torus a settler starts a new neutral line with probability 1/N, N the number of sites: in a
+/// mixed habitat two colonies would then carry the same line half of the time.
 #[expect(clippy::too_many_arguments, reason = "a system names everything it touches")]
 pub fn settle_propagules(
     rules: Res<Rules>,
     clock: Res<Clock>,
     released: Res<Released>,
     pool: Res<GenePool>,
+    mut landing: Local<Option<Landing>>,
     mut random: ResMut<Random>,
     mut vacancies: ResMut<Vacancies>,
     mut settlers: ResMut<Settlers>,
@@ -29,70 +31,27 @@ pub fn settle_propagules(
     mut colonies: Query<(&Lifespan, &Vitals)>,
 ) {
     settlers.0.clear();
-    if released.total == 0 {
-        return;
-    }
-    let sites = rules.0.habitat.sites;
-    let taken = take_sites(released.total, sites, &mut vacancies, &mut random.0);
-    if taken.is_empty() {
+    let landing = landing.get_or_insert_with(|| Landing::within(&rules.0.habitat));
+    let comers = landing.first_comers(&released, &mut vacancies, &mut random.0);
+    if comers.is_empty() {
         return;
     }
     let bodies = only_table(cells.contiguous_iter_mut());
     let (lives, vitals) = only_table(colonies.contiguous_iter_mut());
-    let parents = parents(taken.len(), &released, &mut random.0);
-    for (site, parent) in taken.into_iter().zip(parents) {
+    let marked = rules.0.habitat.layout != Layout::Mixed;
+    let sites = rules.0.habitat.sites as u64;
+    for (comer, order) in comers.into_iter().zip(ledger.settlements..) {
+        let (site, parent) = (comer.site, comer.parent);
         let total = vitals[parent].fecundity;
-        let genotype = inherited(&rules, &pool, bodies, parent, total, &mut random.0);
+        let mut genotype = inherited(&rules, &pool, bodies, parent, total, &mut random.0);
+        if marked && random.0.random_range(0..sites) == 0 {
+            // Founders carry the lines below N.
+            genotype.line = sites + order;
+        }
         settlers.0.push(Settler { site, genotype });
         ledger.parental_age_h += clock.now_h.min(lives[parent].dies_h) - lives[parent].founded_h;
     }
     ledger.recent_settlements += settlers.0.len() as u64;
-}
-
-/// The empty sites that are settled, which are vacant no longer.
-///
-/// Propagules land one after the other, each on a random one of N sites. While f sites are free, the
-/// next to settle is the G-th to come, G geometric with chance f/N: only settlers are drawn, not the
-/// billions that a long tick may bring.
-fn take_sites(
-    propagules: u64,
-    sites: usize,
-    vacancies: &mut Vacancies,
-    rng: &mut impl Rng,
-) -> Vec<u32> {
-    let mut free = vacancies.0.len();
-    let mut left = propagules as f64;
-    while free > 0 {
-        left -= geometric(free as f64 / sites as f64, rng);
-        if left < 0.0 {
-            break;
-        }
-        let landed = rng.random_range(0..free);
-        free -= 1;
-        vacancies.0.swap(landed, free);
-    }
-    let taken = vacancies.0.split_off(free);
-    if !taken.is_empty() {
-        vacancies.0.sort_unstable();
-    }
-    taken
-}
-
-/// The parents of `count` propagules drawn from all that were released, in site order; the draw
-/// does not depend on who lands where.
-fn parents(count: usize, released: &Released, rng: &mut impl Rng) -> Vec<usize> {
-    let mut propagules = index::sample(rng, released.total as usize, count).into_vec();
-    propagules.sort_unstable();
-    let mut counts = (0..).zip(&released.by_site);
-    let (mut parent, mut passed) = (0, 0);
-    let parent_of = |propagule: usize| {
-        while passed <= propagule {
-            let Some((site, &count)) = counts.next() else { break };
-            (parent, passed) = (site, passed + count as usize);
-        }
-        parent
-    };
-    propagules.into_iter().map(parent_of).collect()
 }
 
 /// The genotype of a cell of the parent drawn with probability proportional to `b_i`, mutated.

@@ -3,7 +3,10 @@
 use bevy_ecs::prelude::*;
 
 use super::only_table;
-use crate::world::components::{Output, Vitals};
+use crate::tissue::fields::viability;
+use crate::tissue::{BodyGraph, Sharing, SteadySolver};
+use crate::world::components::{CellCount, Output, Support, Vitals};
+use crate::world::nursery::SharedBodies;
 use crate::world::resources::{Maturing, Rules};
 
 /// Pools support over each colony that becomes adult: `S_i = mean_j v_j`, so `V = mean_j v_j`; and
@@ -12,20 +15,88 @@ pub fn pool_support(
     rules: Res<Rules>,
     maturing: Res<Maturing>,
     mut cells: Query<&Output>,
-    mut colonies: Query<&mut Vitals>,
+    mut colonies: Query<(&CellCount, &mut Vitals)>,
 ) {
-    if maturing.0.is_empty() {
+    if maturing.0.is_empty() || rules.0.support.is_some() {
         return;
     }
     let outputs = only_table(cells.contiguous_iter_mut());
-    let mut vitals = only_table(colonies.contiguous_iter_mut());
+    let (counts, mut vitals) = only_table(colonies.contiguous_iter_mut());
     let vitals = vitals.bypass_change_detection();
-    let n = rules.0.body.adult_cells;
     for &site in &maturing.0 {
-        let body = &outputs[site as usize * n..(site as usize + 1) * n];
-        let [viability, fecundity] = summed(body);
-        vitals[site as usize].viability = viability / n as f64;
-        vitals[site as usize].fecundity = fecundity;
+        let here = site as usize;
+        let body = &outputs[counts[here].rows(here, rules.0.body.adult_cells)];
+        [vitals[here].viability, vitals[here].fecundity] = pooled(body);
+    }
+}
+
+/// Viability and fecundity of a body whose support is pooled.
+pub(super) fn pooled(body: &[Output]) -> [f64; 2] {
+    let [viability, fecundity] = summed(body);
+    [viability / body.len() as f64, fecundity]
+}
+
+/// Working memory of local support.
+#[derive(Debug)]
+pub struct Spreading {
+    solver: SteadySolver,
+    output: Vec<f64>,
+    support: Vec<f64>,
+}
+
+impl Default for Spreading {
+    fn default() -> Self {
+        Self { solver: SteadySolver::working(), output: Vec::new(), support: Vec::new() }
+    }
+}
+
+/// Spreads support by local transport over each colony that becomes adult, `V = n / sum_i (1/S_i)`
+/// (0 if any `S_i` is 0); and sums fecundity, `B = sum_i b_i`.
+pub fn spread_support(
+    rules: Res<Rules>,
+    maturing: Res<Maturing>,
+    bodies: Res<SharedBodies>,
+    mut memory: Local<Spreading>,
+    mut cells: Query<(&Output, &mut Support)>,
+    mut colonies: Query<(&CellCount, &mut Vitals)>,
+) {
+    let Some(sharing) = rules.0.sharing() else { return };
+    if maturing.0.is_empty() {
+        return;
+    }
+    let (outputs, mut received) = only_table(cells.contiguous_iter_mut());
+    let received = received.bypass_change_detection();
+    let (counts, mut vitals) = only_table(colonies.contiguous_iter_mut());
+    let vitals = vitals.bypass_change_detection();
+    for &site in &maturing.0 {
+        let here = site as usize;
+        let body = bodies.shared_by(here);
+        let rows = counts[here].rows(here, rules.0.body.adult_cells);
+        let graph = &body.development.graph;
+        let body = &outputs[rows.clone()];
+        [vitals[here].viability, vitals[here].fecundity] =
+            memory.spread(graph, &sharing, body, &mut received[rows]);
+    }
+}
+
+impl Spreading {
+    /// Sets the support that each cell receives; viability and fecundity of the body.
+    pub(super) fn spread(
+        &mut self,
+        graph: &BodyGraph,
+        sharing: &Sharing,
+        body: &[Output],
+        received: &mut [Support],
+    ) -> [f64; 2] {
+        let Self { solver, output, support } = self;
+        output.clear();
+        output.extend(body.iter().map(|cell| f64::from(cell.viability)));
+        support.resize(output.len(), 0.0);
+        solver.support(graph, sharing, output, support);
+        for (cell, support) in received.iter_mut().zip(&*support) {
+            *cell = Support(*support as f32);
+        }
+        [viability(support), summed(body)[1]]
     }
 }
 

@@ -1,5 +1,5 @@
 //! How fast cells live: the ECS against a hand-written flat loop, and against itself in larger
-//! bodies and with shorter ticks.
+//! bodies, with shorter ticks, and with fields in and between cells.
 //!
 //! `cargo bench --bench life_cycle` measures for about half a minute; run as a test, everything is
 //! done once, briefly, to see that both ways still end alike. Times are printed, never judged: whoever
@@ -14,6 +14,7 @@ use flat_loop::FlatLoop;
 use somadawn::evolution::Start;
 use somadawn::evolution::seeding::{generator, replicate_seed};
 use somadawn::scenario::Settings;
+use somadawn::scenario::settings::{Nutrient, Support};
 use somadawn::study::start;
 use somadawn::theory::{Cue, ReturnCurve};
 use somadawn::world::Population;
@@ -24,6 +25,8 @@ use stopwatch::Stopwatch;
 const EXPONENTS: [f64; 2] = [1.7, 1.3];
 /// Bodies that the cost per cell life is compared between, cells.
 const SIZES: [usize; 4] = [64, 256, 1024, 4096];
+/// Bodies for which space is compared with none, cells.
+const SPATIAL_SIZES: [usize; 3] = [64, 512, 4096];
 
 /// How long to measure.
 struct Effort {
@@ -42,6 +45,7 @@ fn main() {
     compare_with_flat_loop(&effort);
     compare_sizes(&effort);
     compare_ticks(&effort);
+    compare_space(&effort);
 }
 
 /// What one run took.
@@ -98,6 +102,19 @@ fn compare_ticks(effort: &Effort) {
     println!("  {:<26} {}  to a 100th: {to_coarse}", "200th of a generation", rates(&costs[1]));
 }
 
+/// Local support and a nutrient against pooled support and fully fed cells.
+fn compare_space(effort: &Effort) {
+    println!("cost per cell life with local support and nutrient");
+    for size in SPATIAL_SIZES {
+        let generations = (effort.generations * 32 / size as u64).max(2);
+        let plain = Case::of(size, generations);
+        let spatial = Case::of(size, generations).with_space();
+        let costs = interleaved(&[plain, spatial], effort.rounds);
+        let to_plain = spread(&ratios(&costs[1], &costs[0]));
+        println!("  {:<26} {}  to pooled: {to_plain}", format!("{size} cells"), rates(&costs[1]));
+    }
+}
+
 /// Costs of each case, ns per cell life, the cases taking turns.
 fn interleaved(cases: &[Case], rounds: u64) -> Vec<Vec<f64>> {
     let mut costs = vec![Vec::new(); cases.len()];
@@ -136,9 +153,23 @@ impl Case {
         Self { start: start(&settings), settings, generations }
     }
 
+    /// The same with support that reaches two cell diameters and a nutrient that the core lacks.
+    fn with_space(mut self) -> Self {
+        self.settings.support = Some(Support { range_diameters: 2.0, leak: 0.0 });
+        self.settings.nutrient = Some(Nutrient {
+            bath_mm: 0.05,
+            half_saturation_mm: 0.02,
+            uptake_fmol_per_h: 20.0,
+            diffusivity_um2_per_s: 500.0,
+            exchange: 1.0,
+        });
+        self.start = start(&self.settings);
+        self
+    }
+
     fn run_ecs(&self, replicate: u64) -> (Cost, End) {
         let rng = generator(replicate_seed(1, 0, replicate));
-        let founder = |site| Genotype { programme: self.start.programme, founder: site };
+        let founder = |site| Genotype::of_founder(self.start.programme, site);
         let mut world = Population::founded(&self.settings, self.start.tick_h, rng, founder);
         let (founders, began) = (world.ledger().cell_lives, Stopwatch::start());
         while world.clock().generation < self.generations as f64 && world.alive() > 0 {
@@ -151,7 +182,7 @@ impl Case {
 
     fn run_flat(&self, replicate: u64) -> (Cost, End) {
         let rng = generator(replicate_seed(1, 0, replicate));
-        let founder = |site| Genotype { programme: self.start.programme, founder: site };
+        let founder = |site| Genotype::of_founder(self.start.programme, site);
         let mut flat = FlatLoop::founded(&self.settings, self.start.tick_h, rng, founder);
         let (founders, began) = (flat.ledger.cell_lives, Stopwatch::start());
         while flat.generation < self.generations as f64 && flat.alive() > 0 {
