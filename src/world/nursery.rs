@@ -123,7 +123,7 @@ impl Developments {
     fn grow(&mut self, income_share: f64, rng: &mut impl Rng) -> SharedBody {
         let development = self.developer.develop(income_share, rng);
         let incomes = &development.incomes;
-        let mean_income = incomes.iter().sum::<f64>() / incomes.len().max(1) as f64;
+        let mean_income = development.mean_income();
         let factors = IncomeFactors::of(incomes, &self.settings.returns);
         let cells_in_contact = development.graph.cells_in_contact();
         SharedBody { development, mean_income, cells_in_contact, factors }

@@ -96,7 +96,7 @@ impl Bodies {
         };
         Self {
             interior_share: mean(interior_share, looked_at),
-            mean_income: mean(mean_income, looked_at),
+            mean_income: mean(Development::mean_income, looked_at),
             contact_share: mean(contact_share, looked_at),
             incomes_vary: looked_at.iter().any(|body| incomes_vary(body)),
             grown: grown.len(),
@@ -130,12 +130,8 @@ fn contact_share(body: &Development) -> f64 {
     body.graph.cells_in_contact() as f64 / body.graph.cells().max(1) as f64
 }
 
-fn mean_income(body: &Development) -> f64 {
-    body.incomes.iter().sum::<f64>() / body.incomes.len().max(1) as f64
-}
-
 fn incomes_vary(body: &Development) -> bool {
-    let mean = mean_income(body);
+    let mean = body.mean_income();
     body.incomes.iter().any(|income| (income - mean).abs() > EQUAL_INCOMES * mean)
 }
 

@@ -93,6 +93,13 @@ pub struct Development {
 }
 
 impl Development {
+    /// Mean income of the final body's cells relative to e0, before tax; 0 without cells.
+    #[must_use]
+    pub fn mean_income(&self) -> f64 {
+        // A sum of nothing is -0.
+        (self.incomes.iter().sum::<f64>() + 0.0) / self.incomes.len().max(1) as f64
+    }
+
     /// Cells born within so many hours.
     #[must_use]
     pub fn born_by(&self, hours: f64) -> usize {

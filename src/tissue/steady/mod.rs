@@ -63,7 +63,7 @@ pub struct SteadySolver {
 
 impl SteadySolver {
     /// A solver for work in which a field is one of thousands: support to within 1e-4 of each cell's own
-    /// value, and so viability; nutrient and waste to about 1e-4.
+    /// value, and so viability; nutrient and waste to within 2e-4 in bodies of up to 1,000 cells.
     #[must_use]
     pub fn working() -> Self {
         Self { precision: Precision::WORKING, ..Self::default() }

@@ -79,6 +79,26 @@ fn a_working_solver_is_as_close_as_it_says() {
 }
 
 #[test]
+fn a_working_solver_feeds_cells_as_closely_as_it_says() {
+    let (mut working, mut full) = (SteadySolver::working(), SteadySolver::default());
+    for cells in [13, 64, 300, 1_000] {
+        let graph = body(cells);
+        for (demand, kappa) in [(0.05, 0.4), (0.5, 0.1), (5.0, 0.4), (5.0, 0.02)] {
+            let nutrient = Nutrient { demand, kappa, exchange: 0.8 };
+            let waste = Waste { release: 0.1, exchange: 0.8 };
+            let [mut quick, mut exact] = [(); 2].map(|()| vec![1.0; cells]);
+            working.nutrient(&graph, &nutrient, &mut quick);
+            full.nutrient(&graph, &nutrient, &mut exact);
+            assert_near(&quick, &exact, 2e-4);
+            let [mut foul, mut exactly_foul] = [(); 2].map(|()| vec![0.0; cells]);
+            working.waste(&graph, &waste, &exact, &mut foul);
+            full.waste(&graph, &waste, &exact, &mut exactly_foul);
+            assert_near(&foul, &exactly_foul, 2e-4);
+        }
+    }
+}
+
+#[test]
 fn nutrient_is_that_of_the_slow_solver() {
     let mut solver = SteadySolver::default();
     for cells in [1, 2, 40, 300] {

@@ -42,7 +42,7 @@ pub fn charge_replacements(
     let counts = only_table(colonies.contiguous_iter_mut());
     for &site in &maturing.0 {
         let here = site as usize;
-        let Some(body) = bodies.of(here) else { continue };
+        let body = bodies.shared_by(here);
         let rows = counts[here].rows(here, rules.0.body.adult_cells);
         charge(&rules, body, &budgets[rows.clone()], &exposed[rows.clone()], &mut outputs[rows]);
     }
